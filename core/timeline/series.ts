@@ -1,0 +1,63 @@
+import { CoreError } from '../errors.ts'
+
+/**
+ * Readings of one channel as columns: `t` epoch ms, strictly ascending; `v` in the channel's unit, finite.
+ * A gap has no reading; whoever needs one asks `usualInterval` and looks at the distances.
+ */
+export interface Series {
+  readonly t: Float64Array
+  readonly v: Float64Array
+}
+
+export const EMPTY_SERIES: Series = { t: new Float64Array(0), v: new Float64Array(0) }
+
+/** Makes a series of two lists. @throws {CoreError} unequal_lengths, not_ascending, not_finite */
+export function seriesOf(t: ArrayLike<number>, v: ArrayLike<number>): Series {
+  if (t.length !== v.length)
+    throw new CoreError('unequal_lengths', `seriesOf got ${t.length} times and ${v.length} values`)
+  for (let i = 0; i < t.length; i++) {
+    if (!Number.isFinite(v[i])) throw new CoreError('not_finite', `seriesOf got ${v[i]} at index ${i}`)
+    if (i > 0 && !(t[i]! > t[i - 1]!))
+      throw new CoreError('not_ascending', `seriesOf needs ascending times, index ${i} is not`)
+  }
+  return { t: Float64Array.from(t), v: Float64Array.from(v) }
+}
+
+/** First index whose time is at or after `ms`; the length when there is none. O(log n). */
+export function lowerBound(t: Float64Array, ms: number): number {
+  let low = 0
+  let high = t.length
+  while (low < high) {
+    const middle = (low + high) >>> 1
+    if (t[middle]! < ms) low = middle + 1
+    else high = middle
+  }
+  return low
+}
+
+/** The readings in [from, to) as a view on the same memory. O(log n). */
+export function sliceSeries(series: Series, from: number, to: number): Series {
+  const a = lowerBound(series.t, from)
+  const b = Math.max(a, lowerBound(series.t, to))
+  return { t: series.t.subarray(a, b), v: series.v.subarray(a, b) }
+}
+
+/**
+ * The usual distance of neighbouring readings, ms: the median of at most 1,001 distances spread evenly over the
+ * series; NaN with fewer than two readings.
+ */
+export function usualInterval(series: Series): number {
+  const n = series.t.length - 1
+  if (n < 1) return Number.NaN
+  const count = Math.min(n, 1_001)
+  const distances = new Float64Array(count)
+  for (let k = 0; k < count; k++) {
+    const i = count === 1 ? 0 : Math.floor((k * (n - 1)) / (count - 1))
+    distances[k] = series.t[i + 1]! - series.t[i]!
+  }
+  distances.sort()
+  return distances[count >> 1]!
+}
+
+/** How many usual intervals may pass between two readings before a gap lies between them (contract: three). */
+export const GAP_INTERVALS = 3
