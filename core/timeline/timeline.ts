@@ -1,5 +1,5 @@
 import type { Remedy, SiteTest } from '../contract/records.ts'
-import type { Channel, Isolation, Rcd, SiteSheet } from '../contract/site-sheet.ts'
+import type { Channel, Circuit, Rcd, SiteSheet } from '../contract/site-sheet.ts'
 import type { Kept } from './evidence.ts'
 import type { Exposure } from './exposure.ts'
 import type { Series } from './series.ts'
@@ -35,7 +35,7 @@ export interface Thing {
   /** The circuit it is, or hangs on. */
   readonly circuit: string
   /** What its own switching opens: a circuit by its device, a load by unplugging or its own switch. */
-  readonly isolation: Isolation
+  readonly isolation: Circuit['isolation']
   /** Within energised time: on, off, unknown. A load on a circuit that is off is off. */
   readonly state: Exposure
   /** Changes of state while energised, in order of time; the device's own opening and closing is none. */
