@@ -1,4 +1,5 @@
 import { CoreError } from '../errors.ts'
+import type { Spans } from './spans.ts'
 
 /**
  * Readings of one channel as columns: `t` epoch ms, strictly ascending; `v` in the channel's unit, finite.
@@ -61,3 +62,49 @@ export function usualInterval(series: Series): number {
 
 /** How many usual intervals may pass between two readings before a gap lies between them (contract: three). */
 export const GAP_INTERVALS = 3
+
+/** How far apart readings may be before a gap lies between them, ms; NaN with fewer than two readings. */
+export function gapLimit(series: Series): number {
+  return GAP_INTERVALS * usualInterval(series)
+}
+
+/** The time between neighbouring readings that are farther apart than `limit` ms. O(n). */
+export function gaps(series: Series, limit: number = gapLimit(series)): Spans {
+  const { t } = series
+  const out: number[] = []
+  for (let i = 1; i < t.length; i++) {
+    if (t[i]! - t[i - 1]! > limit) out.push(t[i - 1]!, t[i]!)
+  }
+  return Float64Array.from(mergedEdges(out))
+}
+
+/**
+ * The time that readings speak for: from each reading to the next when they are at most `limit` ms apart, else for
+ * `hold` ms (one usual interval when left out). O(n).
+ */
+export function loggedSpans(
+  series: Series,
+  limit: number = gapLimit(series),
+  hold: number = usualInterval(series) || 0,
+): Spans {
+  const { t } = series
+  const out: number[] = []
+  const reach = Math.min(hold, limit) || hold
+  let begun = 0
+  for (let i = 0; i < t.length; i++) {
+    if (i + 1 < t.length && t[i + 1]! - t[i]! <= limit) continue
+    if (t[i]! + reach > t[begun]!) out.push(t[begun]!, t[i]! + reach)
+    begun = i + 1
+  }
+  return Float64Array.from(out)
+}
+
+/** Joins intervals that touch. */
+function mergedEdges(edges: readonly number[]): number[] {
+  const out: number[] = []
+  for (let i = 0; i < edges.length; i += 2) {
+    if (out.length > 0 && out[out.length - 1] === edges[i]) out[out.length - 1] = edges[i + 1]!
+    else out.push(edges[i]!, edges[i + 1]!)
+  }
+  return out
+}
