@@ -32,7 +32,9 @@ export function isInstalled() {
  * @throws {Error} in one sentence for the person at the terminal
  */
 export async function install(say) {
-  say('Installing the locked dependencies; where better-sqlite3 has to be compiled this takes about two minutes, once.')
+  say(
+    'Installing the locked dependencies; better-sqlite3 may have to be compiled, which takes about 75 to 95 seconds, once.',
+  )
   // --include=dev: the build tools are development dependencies, also where NODE_ENV says production.
   const args = ['ci', '--include=dev', '--no-audit', '--no-fund', '--loglevel=warn', '--foreground-scripts']
   const npm = process.env.npm_execpath
