@@ -1,5 +1,5 @@
 import { spawn } from 'node:child_process'
-import { createWriteStream, mkdirSync } from 'node:fs'
+import { closeSync, mkdirSync, openSync } from 'node:fs'
 import { constants } from 'node:os'
 import { dirname } from 'node:path'
 import { ROOT } from './paths.mjs'
@@ -16,28 +16,23 @@ const running = new Set()
  */
 export function run(file, args, options = {}) {
   const { log, env } = options
+  if (log) mkdirSync(dirname(log), { recursive: true })
+  const out = log ? openSync(log, 'w') : undefined
   return new Promise((resolve) => {
     const child = spawn(file, args, {
       cwd: ROOT,
       env: { ...process.env, ...env },
-      stdio: log ? ['ignore', 'pipe', 'pipe'] : 'inherit',
+      stdio: out === undefined ? 'inherit' : ['ignore', out, out],
     })
     running.add(child)
-    if (log) {
-      mkdirSync(dirname(log), { recursive: true })
-      const out = createWriteStream(log)
-      child.stdout?.pipe(out, { end: false })
-      child.stderr?.pipe(out, { end: false })
-      child.on('close', () => out.end())
+    /** @param {number} code */
+    const done = (code) => {
+      if (!running.delete(child)) return // a program that could not start reports twice
+      if (out !== undefined) closeSync(out)
+      resolve(code)
     }
-    child.on('error', () => {
-      running.delete(child)
-      resolve(127)
-    })
-    child.on('close', (code, signal) => {
-      running.delete(child)
-      resolve(code ?? 128 + (signal ? constants.signals[signal] : 0))
-    })
+    child.on('error', () => done(127))
+    child.on('close', (code, signal) => done(code ?? 128 + (signal ? constants.signals[signal] : 0)))
   })
 }
 

@@ -35,6 +35,16 @@ describe('tidiness', () => {
   })
 })
 
+describe('the repository', () => {
+  it('names no folder of the machine it was written on', () => {
+    const names = [...filesIn(['core', 'server', 'web', 'tests', '.ci', 'migrations']), 'README.md', 'DEVELOPERS.md']
+    const local = names.filter((name) =>
+      /(?<![\w.*:])\/(?:home|Users|root|work)\/\w/.test(readFileSync(join(ROOT, name), 'utf8')),
+    )
+    expect(local).toEqual([])
+  })
+})
+
 describe('packages', () => {
   const read = (name: string): string => readFileSync(join(ROOT, name), 'utf8')
 
