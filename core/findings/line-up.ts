@@ -1,0 +1,170 @@
+import { CoreError } from '../errors.ts'
+import { type CauseWindow, type Marginal, marginal } from './cause-sets.ts'
+
+/** One way in which a suspect may act, with what the trips say about it. */
+export interface ExposureWindow extends CauseWindow {
+  /** Short name within the suspect: `on`, `after-on-3`, `02:40+20`. */
+  readonly key: string
+  /** In words, to follow "trips fell …": `within 3 minutes of its start`. */
+  readonly words: string
+  /** Prior weight among the windows of its suspect; they sum to 1. */
+  readonly prior: number
+  /** Share of each trip's time inside the exposure, before leakage evidence: 0, 1, or between for an interval. */
+  readonly inside: Float64Array
+}
+
+export interface Candidate {
+  readonly of: string
+  /** Prior odds of being a cause. */
+  readonly odds: number
+  readonly windows: readonly ExposureWindow[]
+}
+
+export interface Standing {
+  readonly of: string
+  /** Posterior probability of being a cause. */
+  readonly probability: number
+  /** Expected share of the trips it accounts for. */
+  readonly share: number
+  /** Its windows by posterior weight, heaviest first, at most five. */
+  readonly windows: readonly { readonly window: ExposureWindow; readonly weight: number }[]
+  /** Natural log of the evidence as a single cause over that of no cause. */
+  readonly logBayesFactor: number
+}
+
+export interface LineUp {
+  /** In the order of the candidates. */
+  readonly standings: readonly Standing[]
+  /** Probability that no candidate is a cause. */
+  readonly none: number
+  /** Expected share of trips that no candidate accounts for. */
+  readonly unexplained: number
+}
+
+/** How many windows of a suspect go on to sets of two and three, and how many suspects. */
+const WINDOWS_IN_PAIRS = 3
+const WINDOWS_IN_TRIPLES = 2
+const SUSPECTS_IN_PAIRS = 12
+const SUSPECTS_IN_TRIPLES = 5
+
+interface Weighed {
+  readonly members: readonly number[]
+  readonly windows: readonly ExposureWindow[]
+  readonly logWeight: number
+  readonly marginal: Marginal
+}
+
+/**
+ * Bayesian variable selection over sets of at most three causes of a point process: each suspect adds a gamma-
+ * distributed intensity while its exposure holds, windows are averaged over, sets without hope are left out
+ * (Occam's window: Madigan & Raftery 1994). `hours` is energised time, `trips` their number. Independent of the
+ * order of trips and candidates up to rounding. Cost: windows × trips² and a bounded number of sets.
+ *
+ * @throws {CoreError} out_of_range without time, unequal_lengths when a window does not weigh every trip
+ */
+export function lineUp(hours: number, trips: number, candidates: readonly Candidate[]): LineUp {
+  if (!(hours > 0)) throw new CoreError('out_of_range', `lineUp needs energised hours, got ${hours}`)
+  for (const { windows } of candidates) {
+    for (const w of windows) {
+      if (w.weights.length !== trips) {
+        throw new CoreError('unequal_lengths', `lineUp got ${w.weights.length} weights for ${trips} trips`)
+      }
+    }
+  }
+  const empty = marginal(hours, trips, [])
+  const sets: Weighed[] = [{ members: [], windows: [], logWeight: empty.log, marginal: empty }]
+  const add = (members: readonly number[], windows: readonly ExposureWindow[]): number => {
+    const m = marginal(hours, trips, windows)
+    let logWeight = m.log
+    for (const c of members) logWeight += Math.log(candidates[c]!.odds)
+    for (const w of windows) logWeight += Math.log(w.prior)
+    sets.push({ members, windows, logWeight, marginal: m })
+    return logWeight
+  }
+
+  const singles = candidates.map((candidate, c) => {
+    const scored = candidate.windows.map((window) => ({ window, log: add([c], [window]) }))
+    scored.sort((a, b) => b.log - a.log)
+    return { c, scored, log: logSum(scored.map((s) => s.log)) }
+  })
+  const ranked = singles.filter((s) => s.scored.length > 0 && s.log > Number.NEGATIVE_INFINITY)
+  ranked.sort((a, b) => b.log - a.log || a.c - b.c)
+
+  const best = (s: (typeof ranked)[number], n: number): ExposureWindow[] => s.scored.slice(0, n).map((x) => x.window)
+  const inPairs = ranked.slice(0, SUSPECTS_IN_PAIRS)
+  for (let i = 0; i < inPairs.length; i++) {
+    for (let j = i + 1; j < inPairs.length; j++) {
+      for (const a of best(inPairs[i]!, WINDOWS_IN_PAIRS)) {
+        for (const b of best(inPairs[j]!, WINDOWS_IN_PAIRS)) add([inPairs[i]!.c, inPairs[j]!.c], [a, b])
+      }
+    }
+  }
+  const inTriples = ranked.slice(0, SUSPECTS_IN_TRIPLES)
+  for (let i = 0; i < inTriples.length; i++) {
+    for (let j = i + 1; j < inTriples.length; j++) {
+      for (let k = j + 1; k < inTriples.length; k++) {
+        for (const a of best(inTriples[i]!, WINDOWS_IN_TRIPLES)) {
+          for (const b of best(inTriples[j]!, WINDOWS_IN_TRIPLES)) {
+            for (const d of best(inTriples[k]!, WINDOWS_IN_TRIPLES)) {
+              add([inTriples[i]!.c, inTriples[j]!.c, inTriples[k]!.c], [a, b, d])
+            }
+          }
+        }
+      }
+    }
+  }
+  return summarise(trips, candidates, sets, empty.log)
+}
+
+function summarise(
+  trips: number,
+  candidates: readonly Candidate[],
+  sets: readonly Weighed[],
+  emptyLog: number,
+): LineUp {
+  const total = logSum(sets.map((s) => s.logWeight))
+  const probability = new Float64Array(candidates.length)
+  const share = new Float64Array(candidates.length)
+  const perWindow = candidates.map(() => new Map<ExposureWindow, number>())
+  const single = candidates.map(() => [] as number[])
+  let none = 0
+  for (const set of sets) {
+    const p = Math.exp(set.logWeight - total)
+    if (set.members.length === 0) none += p
+    set.members.forEach((c, place) => {
+      probability[c]! += p
+      if (trips > 0) share[c]! += (p * set.marginal.expected[place]!) / trips
+      const windows = perWindow[c]!
+      windows.set(set.windows[place]!, (windows.get(set.windows[place]!) ?? 0) + p)
+    })
+    if (set.members.length === 1) {
+      const c = set.members[0]!
+      single[c]!.push(set.logWeight - Math.log(candidates[c]!.odds))
+    }
+  }
+  let explained = 0
+  for (const s of share) explained += s
+  const standings = candidates.map((candidate, c): Standing => {
+    const weight = probability[c]! > 0 ? probability[c]! : 1
+    const windows = [...perWindow[c]!].map(([window, p]) => ({ window, weight: p / weight }))
+    windows.sort((a, b) => b.weight - a.weight || (a.window.key < b.window.key ? -1 : 1))
+    return {
+      of: candidate.of,
+      probability: Math.min(1, probability[c]!),
+      share: share[c]!,
+      windows: windows.slice(0, 5),
+      logBayesFactor: logSum(single[c]!) - emptyLog,
+    }
+  })
+  return { standings, none, unexplained: Math.max(0, 1 - explained) }
+}
+
+/** ln Σ exp(xᵢ) without overflow; −∞ for an empty list. */
+function logSum(logs: readonly number[]): number {
+  let top = Number.NEGATIVE_INFINITY
+  for (const x of logs) if (x > top) top = x
+  if (top === Number.NEGATIVE_INFINITY) return top
+  let sum = 0
+  for (const x of logs) sum += Math.exp(x - top)
+  return top + Math.log(sum)
+}
