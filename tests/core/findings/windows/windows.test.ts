@@ -1,0 +1,115 @@
+import { describe, expect, it } from 'vitest'
+import { clockWindows, periodWindows } from '../../../../core/findings/windows/clock-windows.ts'
+import { sunWindows } from '../../../../core/findings/windows/sun-windows.ts'
+import { thingWindows } from '../../../../core/findings/windows/thing-windows.ts'
+import type { Frame } from '../../../../core/findings/windows/trip-share.ts'
+import { antecedent, rainWindows } from '../../../../core/findings/windows/weather-windows.ts'
+import { sunTimes } from '../../../../core/timeline/sun.ts'
+import type { Timeline } from '../../../../core/timeline/timeline.ts'
+import { HOUR, loadOn, MINUTE, START, timelineOf, tripAt } from '../timeline-of.ts'
+
+const frameOf = (timeline: Timeline): Frame => ({
+  timeline,
+  hours: (timeline.to - timeline.from) / HOUR,
+  trips: timeline.trips.map(({ from, to }) => ({ from, to })),
+})
+const inside = (windows: readonly { key: string; inside: Float64Array }[], key: string): number[] => [
+  ...windows.find((w) => w.key === key)!.inside,
+]
+
+describe('thingWindows', () => {
+  const day = 24 * HOUR
+  const runs = [0, 1, 2, 3].map((d) => [START + d * day + 6 * HOUR, START + d * day + 8 * HOUR] as const)
+  const oven = loadOn('oven', runs, START, START + 4 * day)
+
+  it('measures exposed hours and which trips fell inside', () => {
+    const trips = [
+      tripAt(START + 6 * HOUR + 2 * MINUTE),
+      tripAt(START + day + 7.5 * HOUR),
+      tripAt(START + 2 * day + 12 * HOUR),
+    ]
+    const windows = thingWindows(frameOf(timelineOf({ days: 4, things: [oven], trips })), oven)
+    const on = windows.find((w) => w.key === 'on')!
+    expect(on.hours).toBeCloseTo(8, 10)
+    expect([...on.inside]).toEqual([1, 1, 0])
+    expect(inside(windows, 'after-on-3')).toEqual([1, 0, 0])
+    expect(inside(windows, 'late-60')).toEqual([0, 1, 0])
+    expect(windows.reduce((sum, w) => sum + w.prior, 0)).toBeCloseTo(1, 12)
+  })
+
+  it('spreads a trip known as an interval over it', () => {
+    const trips = [tripAt(START + 5 * HOUR, START + 7 * HOUR)]
+    const windows = thingWindows(frameOf(timelineOf({ days: 4, things: [oven], trips })), oven)
+    expect(inside(windows, 'on')[0]).toBeCloseTo(0.5, 10)
+  })
+
+  it('counts the moment of the trip itself as inside, though supply ends there', () => {
+    const trips = [tripAt(START + 8 * HOUR)]
+    expect(inside(thingWindows(frameOf(timelineOf({ days: 4, trips })), oven), 'on')).toEqual([1])
+  })
+
+  it('has no window for what never changed', () => {
+    const always = loadOn('freezer', [[START, START + 4 * day]], START, START + 4 * day)
+    expect(thingWindows(frameOf(timelineOf({ days: 4, trips: [tripAt(START + HOUR)] })), always)).toEqual([])
+  })
+
+  it('takes unknown time in the proportion of the known', () => {
+    const half = { ...oven, state: { on: oven.state.on.slice(0, 4), off: oven.state.off.slice(0, 4) } }
+    const trips = [tripAt(START + 3.9 * day)]
+    const on = thingWindows(frameOf(timelineOf({ days: 4, trips })), half).find((w) => w.key === 'on')!
+    expect(on.inside[0]).toBeGreaterThan(0.05)
+    expect(on.inside[0]).toBeLessThan(0.15)
+  })
+})
+
+describe('clockWindows', () => {
+  it('holds trips at one local time in both halves of a span with a change of the hour', () => {
+    // Summer time ended in Vienna on 2026-10-25 at 03:00 local: 02:10 local is 00:10 UTC before and 01:10 UTC after.
+    const from = Date.UTC(2026, 9, 20)
+    const trips = [21, 22, 23, 27, 28].map((d) => tripAt(Date.UTC(2026, 9, d, d < 25 ? 0 : 1, 10)))
+    const timeline = timelineOf({ from, days: 14, zone: 'Europe/Vienna', trips })
+    const windows = clockWindows(frameOf(timeline))
+    expect(inside(windows, '02:05+10')).toEqual([1, 1, 1, 1, 1])
+    expect(windows.reduce((sum, w) => sum + w.prior, 0)).toBeCloseTo(1, 10)
+    const wide = windows.find((w) => w.key === '12:00+180')!
+    expect(wide.hours).toBeCloseTo(14 * 3, 6)
+  })
+})
+
+describe('periodWindows', () => {
+  it('finds trips every 37 hours in one phase', () => {
+    const trips = [0, 1, 2, 3, 4, 5, 6].map((k) => tripAt(START + 5 * HOUR + k * 37 * HOUR))
+    const windows = periodWindows(frameOf(timelineOf({ days: 14, trips })))
+    const best = windows.filter((w) => w.inside.every((x) => x === 1)).map((w) => Number.parseFloat(w.key))
+    expect(best.some((h) => Math.abs(h - 37) < 0.5)).toBe(true)
+  })
+})
+
+describe('sunWindows', () => {
+  it('follows the sunset through the weeks', () => {
+    const trips = [1, 10, 20, 30, 40].map((d) =>
+      tripAt(sunTimes(START + d * 24 * HOUR, 47.3, 13.4).sunset! + 10 * MINUTE),
+    )
+    const windows = sunWindows(frameOf(timelineOf({ days: 45, trips })))
+    expect(inside(windows, 'sunset0..30')).toEqual([1, 1, 1, 1, 1])
+    expect(inside(windows, 'sunrise-15..15')).toEqual([0, 0, 0, 0, 0])
+  })
+})
+
+describe('rainWindows', () => {
+  it('lets standing rain fade by half in its half-life', () => {
+    // Kohler & Linsley (1951): P(t) = P(t-1) k + rain; here k = 2^(-Δt / half-life)
+    const t = Float64Array.from([0, HOUR, 2 * HOUR, 5 * HOUR])
+    expect([...antecedent({ t, v: Float64Array.from([4, 0, 0, 1]) }, 1).v]).toEqual([4, 2, 1, 1.125])
+  })
+
+  it('counts the hours after rain as wet', () => {
+    const t = Float64Array.from({ length: 168 }, (_, i) => START + i * HOUR)
+    const v = Float64Array.from(t, (_, i) => (i === 50 ? 3.9 : 0))
+    const trips = [tripAt(START + 53 * HOUR), tripAt(START + 120 * HOUR)]
+    const windows = rainWindows(frameOf(timelineOf({ rain: { t, v }, trips })))
+    expect(inside(windows, 'wet-4-0-1')).toEqual([1, 0])
+    // 3.9 mm fade to 1 mm in 7.9 h: the readings of eight hours lie above
+    expect(windows.find((w) => w.key === 'wet-4-0-1')!.hours).toBeCloseTo(8, 6)
+  })
+})
