@@ -1,0 +1,31 @@
+import { Columns } from './columns.ts'
+import { EMPTY_SERIES, GAP_INTERVALS, type Series, sliceSeries, usualInterval } from './series.ts'
+
+/**
+ * The readings of [from, to) as a line of at most `columns` pixels needs them: all of them when there are no more than
+ * four for each column, else first, least, greatest and last of each column. One NaN stands in each gap longer than
+ * three usual intervals of the span. O(n).
+ */
+export function traceColumns(series: Series, from: number, to: number, columns: number): Series {
+  const span = from < to ? sliceSeries(series, from, to) : EMPTY_SERIES
+  const gapMs = GAP_INTERVALS * usualInterval(span)
+  if (span.t.length <= 4 * columns) return breakGaps(span, gapMs)
+  const gathered = new Columns(from, to, columns)
+  gathered.addReadings(span)
+  return gathered.finish(gapMs)
+}
+
+/** A series with one NaN halfway in each gap longer than `gapMs`; none when that is NaN. */
+function breakGaps({ t, v }: Series, gapMs: number): Series {
+  const outT: number[] = []
+  const outV: number[] = []
+  for (let i = 0; i < t.length; i++) {
+    if (i > 0 && t[i]! - t[i - 1]! > gapMs) {
+      outT.push((t[i]! + t[i - 1]!) / 2)
+      outV.push(Number.NaN)
+    }
+    outT.push(t[i]!)
+    outV.push(v[i]!)
+  }
+  return { t: Float64Array.from(outT), v: Float64Array.from(outV) }
+}
