@@ -1,0 +1,161 @@
+import { type Series, usualInterval } from '../timeline/series.ts'
+import type { Thing, Timeline } from '../timeline/timeline.ts'
+import { levelBetween } from './levels.ts'
+
+const MINUTE_MS = 60_000
+/** Only so much of a long piece next to an edge is looked at: over more the level drifts. */
+const BESIDE_MS = 30 * MINUTE_MS
+/** Pieces too short for a level are bridged, as long as no more than this is skipped. */
+const BRIDGE_MS = 10 * MINUTE_MS
+/** Most differences without any switching that are taken to measure the wander of the level. */
+const MOST_PLACEBOS = 400
+
+/** One difference of neighbouring levels, later less earlier, mA, and what changed between them. */
+export interface StepRow {
+  readonly at: number
+  readonly ma: number
+  /** Level before the change, mA. */
+  readonly before: number
+  /** Positions in `things`, and +1 for on, −1 for off. Empty for a placebo: a place where nothing named changed. */
+  readonly things: readonly number[]
+  readonly signs: readonly number[]
+}
+
+export interface StepRows {
+  /** By time. */
+  readonly steps: readonly StepRow[]
+  readonly placebos: readonly StepRow[]
+}
+
+interface Piece {
+  readonly from: number
+  readonly to: number
+}
+
+/**
+ * Cuts the logged time wherever a circuit or load changes and takes the differences of neighbouring robust levels, a bit
+ * away from the edges (methods.md §2). Where a circuit changes, the change is its own and what its loads do with it is
+ * part of it. Linear in changes × readings looked at near each (at most 401).
+ */
+export function stepRows(timeline: Timeline, leakage: Series): StepRows {
+  const interval = usualInterval(leakage)
+  if (Number.isNaN(interval)) return { steps: [], placebos: [] }
+  const edges = edgesOf(timeline)
+  const pieces = piecesOf(timeline, edges, interval)
+  const steps: StepRow[] = []
+  let e = 0
+  let held: { piece: Piece; stretch: number } | null = null
+  for (const { piece, stretch } of pieces) {
+    if (held !== null && held.stretch === stretch && piece.from - held.piece.to <= BRIDGE_MS) {
+      while (e < edges.length && edges[e]!.at < held.piece.to) e++
+      const changed = new Map<number, number>()
+      const circuits = new Set<string>()
+      for (; e < edges.length && edges[e]!.at <= piece.from; e++) {
+        const { thing, on } = edges[e]!
+        changed.set(thing, (changed.get(thing) ?? 0) + (on ? 1 : -1))
+        if (timeline.things[thing]!.kind === 'circuit') circuits.add(timeline.things[thing]!.circuit)
+      }
+      const row = rowOf(timeline.things, leakage, held.piece, piece, interval, changed, circuits)
+      if (row !== null) steps.push(row)
+    }
+    held = { piece, stretch }
+  }
+  return { steps, placebos: placebosOf(leakage, pieces, interval) }
+}
+
+interface Edge {
+  readonly at: number
+  readonly thing: number
+  readonly on: boolean
+}
+
+function edgesOf(timeline: Timeline): Edge[] {
+  const edges: Edge[] = []
+  timeline.things.forEach((thing, index) => {
+    for (const { at, on } of thing.changes) edges.push({ at, thing: index, on })
+  })
+  return edges.sort((a, b) => a.at - b.at || a.thing - b.thing)
+}
+
+/** Settling time after a change, ms: two readings, at least two seconds. */
+function settling(interval: number): number {
+  return Math.max(2_000, 2 * interval)
+}
+
+/** Pieces long enough for a level, with the logged stretch each lies in. */
+function piecesOf(timeline: Timeline, edges: readonly Edge[], interval: number): { piece: Piece; stretch: number }[] {
+  const { logged } = timeline
+  const least = settling(interval) + 3 * interval
+  const list: { piece: Piece; stretch: number }[] = []
+  let e = 0
+  for (let s = 0; s < logged.length; s += 2) {
+    let from = logged[s]!
+    const end = logged[s + 1]!
+    while (e < edges.length && edges[e]!.at < from) e++
+    for (;;) {
+      const to = e < edges.length && edges[e]!.at < end ? edges[e]!.at : end
+      if (to - from >= least) list.push({ piece: { from, to }, stretch: s })
+      if (to === end) break
+      from = to
+      e++
+    }
+  }
+  return list
+}
+
+function rowOf(
+  things: readonly Thing[],
+  leakage: Series,
+  a: Piece,
+  b: Piece,
+  interval: number,
+  changed: ReadonlyMap<number, number>,
+  circuits: ReadonlySet<string>,
+): StepRow | null {
+  const list: number[] = []
+  const signs: number[] = []
+  for (const [thing, sign] of changed) {
+    if (sign === 0) continue
+    const { kind, circuit } = things[thing]!
+    if (kind === 'load' && circuits.has(circuit)) continue
+    list.push(thing)
+    signs.push(Math.sign(sign))
+  }
+  if (list.length === 0) return null
+  const before = levelBetween(leakage, Math.max(a.from, a.to - BESIDE_MS) + lead(a, interval), a.to - interval / 2, 2)
+  const after = levelBetween(leakage, b.from + settling(interval), Math.min(b.to, b.from + BESIDE_MS) - interval / 2, 2)
+  if (Number.isNaN(before + after)) return null
+  return { at: b.from, ma: after - before, before, things: list, signs }
+}
+
+/** What to leave out at the beginning of the earlier piece: its own settling, unless its far end is out of sight anyway. */
+function lead(piece: Piece, interval: number): number {
+  return piece.to - piece.from > BESIDE_MS ? 0 : settling(interval)
+}
+
+/** Differences across places in long pieces where nothing changed: how much the level wanders of itself. */
+function placebosOf(
+  leakage: Series,
+  pieces: readonly { piece: Piece; stretch: number }[],
+  interval: number,
+): StepRow[] {
+  const least = Math.max(4 * MINUTE_MS, 20 * interval)
+  const places: { piece: Piece; at: number }[] = []
+  for (const { piece } of pieces) {
+    const length = piece.to - piece.from
+    if (length < least) continue
+    const count = Math.max(1, Math.floor(length / (2 * BESIDE_MS)))
+    for (let k = 0; k < count; k++) places.push({ piece, at: piece.from + ((k + 0.5) * length) / count })
+  }
+  const rows: StepRow[] = []
+  const stride = Math.max(1, Math.ceil(places.length / MOST_PLACEBOS))
+  for (let i = 0; i < places.length; i += stride) {
+    const { piece, at } = places[i]!
+    const from = Math.max(piece.from + settling(interval), at - BESIDE_MS)
+    const to = Math.min(piece.to, at + BESIDE_MS)
+    const before = levelBetween(leakage, from, at - interval / 2, 2)
+    const after = levelBetween(leakage, at + settling(interval), to - interval / 2, 2)
+    if (!Number.isNaN(before + after)) rows.push({ at, ma: after - before, before, things: [], signs: [] })
+  }
+  return rows
+}

@@ -1,0 +1,66 @@
+import type { BudgetLine } from '../contract/findings.ts'
+import type { Change, Thing, Timeline } from '../timeline/timeline.ts'
+import type { TripFact } from './trip-facts.ts'
+
+const MINUTE_MS = 60_000
+/** What came on so long before a trip without warning may still have fired it; the course allows no more. */
+const SUDDEN_MS = MINUTE_MS
+/** Before the rise of a step: clocks of loggers and switches differ by seconds. */
+const STEP_SLACK_MS = MINUTE_MS
+/** A climb is a warming or wetting of half an hour at most after switching on. */
+const CREEP_MS = 40 * MINUTE_MS
+/** Switching off may fire a device by its transient, but only at once. */
+const OFF_MS = 10_000
+
+/** What changed within the delay that the course of a trip allows. */
+export interface Trigger {
+  readonly thing: Thing
+  readonly change: Change
+  /** How long before the trip, ms. */
+  readonly agoMs: number
+}
+
+/**
+ * The change most likely to have fired a trip, or null, which is a good answer: for a step what came on round its rise,
+ * for a creep what still runs since the climb began, without warning what came on in the last minute. Of several
+ * the one with the largest figure in the budget, then the latest.
+ */
+export function triggerOf(timeline: Timeline, fact: TripFact, lines: readonly BudgetLine[]): Trigger | null {
+  const trip = timeline.trips[fact.index]!
+  if (fact.course === 'shared' || trip.to - trip.from > 2 * MINUTE_MS) return null
+  const end = trip.to
+  const since = earliest(fact, trip.from)
+  const until = fact.course === 'step' && fact.roseAt !== null ? Math.min(end, fact.roseAt + STEP_SLACK_MS) : end
+  let best: { trigger: Trigger; ma: number } | null = null
+  for (const thing of timeline.things) {
+    const change = lastChange(thing, until)
+    if (change === null) continue
+    const agoMs = Math.max(0, trip.from - change.at)
+    const allowed = change.on ? change.at >= since : fact.course === 'sudden' && trip.from - change.at <= OFF_MS
+    if (!allowed) continue
+    // What falls when it comes on has not fired a rise.
+    const ma = change.on ? (lines.find((l) => l.of === thing.of)?.ma ?? 0) : 0
+    if (ma < 0) continue
+    if (best === null || ma > best.ma || (ma === best.ma && agoMs < best.trigger.agoMs)) {
+      best = { trigger: { thing, change, agoMs }, ma }
+    }
+  }
+  return best?.trigger ?? null
+}
+
+function earliest(fact: TripFact, tripAt: number): number {
+  if (fact.course === 'step' && fact.roseAt !== null) return fact.roseAt - STEP_SLACK_MS
+  return tripAt - (fact.course === 'creep' ? CREEP_MS : SUDDEN_MS)
+}
+
+/** The latest change at or before t. O(log n). */
+function lastChange(thing: Thing, t: number): Change | null {
+  let low = 0
+  let high = thing.changes.length
+  while (low < high) {
+    const middle = (low + high) >>> 1
+    if (thing.changes[middle]!.at <= t) low = middle + 1
+    else high = middle
+  }
+  return low === 0 ? null : thing.changes[low - 1]!
+}
