@@ -1,6 +1,6 @@
 import type { BudgetLine, Findings, Headroom, Suspect } from '../contract/findings.ts'
 import type { Timeline } from '../timeline/timeline.ts'
-import { countOf, duration, figure, nameOf, sentence } from './words.ts'
+import { countOf, current, duration, nameOf, sentence } from './words.ts'
 
 /** Fewer trips than this prove almost nothing, whatever the odds say. */
 const FEW_TRIPS = 4
@@ -45,7 +45,7 @@ export function answer(
   const line = budget.find((b) => b.of === first.of)
   const adds =
     line?.ma !== null && line?.ma !== undefined && line.ma >= 0.05
-      ? ` ${sentence(name)} adds ${figure(line.ma)} mA.`
+      ? ` ${sentence(name)} adds ${current(line.ma)} mA while on.`
       : ''
   const few = trips < FEW_TRIPS ? ` With ${countOf(trips, 'trip')} almost nothing is proven.` : ''
   return {
@@ -60,8 +60,8 @@ export function answer(
 function headroomSentence(headroom: Headroom): string {
   if (headroom.standingMa === null) return ''
   const { value, basis } = headroom.tripMa
-  const of = basis === 'limits' ? `about ${figure(value)}` : figure(value)
-  return `Standing leakage uses ${figure(headroom.standingMa.p50)} of ${of} mA.`
+  const of = basis === 'limits' ? `about ${current(value)}` : current(value)
+  return `Standing leakage uses ${current(headroom.standingMa.p50)} of ${of} mA.`
 }
 
 function odds(p: number): string {

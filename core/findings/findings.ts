@@ -1,43 +1,57 @@
 import type { Findings } from '../contract/findings.ts'
 import { writeInstant } from '../contract/primitives.ts'
+import { buildTimeline } from '../timeline/build-timeline.ts'
 import type { Evidence } from '../timeline/evidence.ts'
+import { totalMs } from '../timeline/spans.ts'
+import { answer } from './answer.ts'
+import { budget } from './budget.ts'
+import { coverage } from './coverage.ts'
+import { headroom } from './headroom.ts'
+import { nextSteps } from './isolation.ts'
+import { proof } from './proof.ts'
+import { runProfiles } from './run-profiles.ts'
+import { suspects } from './suspects.ts'
+import { tripFindings } from './trips.ts'
 
 /** Raised whenever the same evidence may give other findings than before; part of every cache key. */
 export const FINDINGS_VERSION = 1
 
+const UNTRIED: Findings['patterns'] = {
+  clock: { verdict: 'not looked at' },
+  period: { verdict: 'not looked at' },
+  sun: { verdict: 'not looked at' },
+  rain: { verdict: 'not looked at' },
+  temperature: { verdict: 'not looked at' },
+  load: { verdict: 'not looked at' },
+  timedSteps: [],
+}
+
 /**
  * The findings of one device over [from, to): the only door into this folder. Same evidence, same bytes.
  * Too little data is an answer of its own, never an error.
+ *
+ * @throws {CoreError} unknown_reference when the sheet has no such device
  */
 export function findings(evidence: Evidence): Findings {
-  const rcd = evidence.sheet.rcds.find((r) => r.ref === evidence.rcd)
-  const rated = rcd?.ratedMa ?? 30
+  const timeline = buildTimeline(evidence)
+  const hours = totalMs(timeline.energised) / 3_600_000
+  const room = headroom(timeline)
+  const lines = budget(timeline)
+  const trips = tripFindings(timeline, lines, room)
+  const weighed = suspects(timeline, { trips, profiles: runProfiles(timeline, lines), budget: lines, headroom: room })
   return {
     rcd: evidence.rcd,
-    from: writeInstant(evidence.from),
-    to: writeInstant(evidence.to),
-    answer: { text: 'Not enough to say yet.', sureness: null },
-    coverage: { energisedHours: (evidence.to - evidence.from) / 3_600_000, readingHours: 0, trips: 0, gaps: [] },
-    headroom: {
-      tripMa: { value: 0.75 * rated, low: 0.5 * rated, high: rated, basis: 'limits' },
-      standingMa: null,
-      shareOfRating: null,
-      advisedShare: 0.3,
-    },
-    budget: [],
-    trips: [],
-    suspects: [],
-    patterns: {
-      clock: { verdict: 'too few trips to say' },
-      period: { verdict: 'too few trips to say' },
-      sun: { verdict: 'too few trips to say' },
-      rain: { verdict: 'no rain channel' },
-      temperature: { verdict: 'no temperature channel' },
-      load: { verdict: 'no load current channel' },
-      timedSteps: [],
-    },
-    next: [],
-    proof: { remedyAt: null, quietHours: null, confidenceFixed: null, hoursTo95: null, text: 'No remedy is recorded.' },
-    notes: [],
+    from: writeInstant(timeline.from),
+    to: writeInstant(timeline.to),
+    answer: answer(timeline, hours, room, lines, weighed.suspects),
+    coverage: coverage(timeline),
+    headroom: room,
+    budget: lines,
+    trips,
+    suspects: weighed.suspects,
+    patterns: UNTRIED,
+    next: nextSteps(timeline, hours, weighed.suspects),
+    proof: proof(timeline),
+    notes: [...timeline.notes],
   }
 }

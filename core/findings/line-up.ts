@@ -41,6 +41,12 @@ export interface LineUp {
   readonly unexplained: number
 }
 
+/**
+ * Chance that the model itself is wrong: halves with every trip, and never below this. With that chance nothing was
+ * learnt, and the prior stands: three trips cannot make anything certain, however well they fit.
+ */
+const LEAST_DOUBT = 0.01
+
 /** How many windows of a suspect go on to sets of two and three, and how many suspects. */
 const WINDOWS_IN_PAIRS = 3
 const WINDOWS_IN_TRIPLES = 2
@@ -127,6 +133,9 @@ function summarise(
   const share = new Float64Array(candidates.length)
   const perWindow = candidates.map(() => new Map<ExposureWindow, number>())
   const single = candidates.map(() => [] as number[])
+  const doubt = Math.max(LEAST_DOUBT, 0.5 ** trips)
+  let priorNone = 1
+  for (const { odds } of candidates) priorNone /= 1 + odds
   let none = 0
   for (const set of sets) {
     const p = Math.exp(set.logWeight - total)
@@ -150,13 +159,13 @@ function summarise(
     windows.sort((a, b) => b.weight - a.weight || (a.window.key < b.window.key ? -1 : 1))
     return {
       of: candidate.of,
-      probability: Math.min(1, probability[c]!),
+      probability: (1 - doubt) * Math.min(1, probability[c]!) + (doubt * candidate.odds) / (1 + candidate.odds),
       share: share[c]!,
       windows: windows.slice(0, 5),
       logBayesFactor: logSum(single[c]!) - emptyLog,
     }
   })
-  return { standings, none, unexplained: Math.max(0, 1 - explained) }
+  return { standings, none: (1 - doubt) * none + doubt * priorNone, unexplained: Math.max(0, 1 - explained) }
 }
 
 /** ln Σ exp(xᵢ) without overflow; −∞ for an empty list. */

@@ -12,7 +12,7 @@ export interface Preference {
   /** Trips expected inside if they fell anywhere. */
   readonly expected: number
   /** Ratio of the rates inside and outside with 90 % limits; infinite when all fell inside. */
-  readonly ratio: number
+  readonly ratio: number | null
   readonly low: number
   readonly high: number
   /** One-sided exact p, and the same adjusted by Holm for every window tried here. */

@@ -30,6 +30,11 @@ export function figure(x: number): string {
   return String(Number(x.toFixed(digits)))
 }
 
+/** A current for people, mA: one decimal from 1 mA on, two below. */
+export function current(ma: number): string {
+  return Math.abs(ma) >= 0.995 ? ma.toFixed(1) : String(Number(ma.toFixed(2)))
+}
+
 /** Hours as days or hours, whichever reads better. */
 export function duration(hours: number): string {
   if (hours >= 47.5) return `${figure(hours / 24)} days`

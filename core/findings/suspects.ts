@@ -1,0 +1,291 @@
+import type { BudgetLine, Grade, Headroom, Reason, Role, Suspect, TripFinding } from '../contract/findings.ts'
+import { totalMs, union } from '../timeline/spans.ts'
+import type { Thing, Timeline } from '../timeline/timeline.ts'
+import { type Candidate, type ExposureWindow, type LineUp, lineUp, type Standing } from './line-up.ts'
+import { type CauseKind, courseRatio } from './marks.ts'
+import { type Preference, preferences } from './preference.ts'
+import { reasonsOf } from './reasons.ts'
+import type { RunProfile } from './run-profiles.ts'
+import { clockWindows, periodWindows } from './windows/clock-windows.ts'
+import { levelWindows } from './windows/level-windows.ts'
+import { sunWindows } from './windows/sun-windows.ts'
+import { thingWindows } from './windows/thing-windows.ts'
+import { type Frame, HOUR_MS, MINUTE_MS, marked } from './windows/trip-share.ts'
+import { loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
+import { nameOf, rounded } from './words.ts'
+
+/** Prior odds of being a cause, before any reading: judgement from the mechanisms of domain.md, no source. */
+const ODDS = {
+  load: 0.08,
+  circuit: 0.05,
+  rain: 0.1,
+  temperature: 0.03,
+  clock: 0.06,
+  period: 0.02,
+  sun: 0.04,
+  'load-current': 0.05,
+  standing: 0.08,
+  device: 0.03,
+  supply: 0.05,
+  unlisted: 0.06,
+} as const
+
+/** A trip soon after the device was closed again belongs to the episode before: the same fault, still there. */
+const EPISODE_MS = 15 * MINUTE_MS
+
+/** Below this a suspect with contrast is cleared; grades of methods.md §8. */
+const CLEARED = 0.02
+
+export interface Weighed {
+  readonly suspects: Suspect[]
+  readonly frame: Frame
+  readonly lineUp: LineUp
+}
+
+/** What the other findings say that the line-up uses. */
+export interface Measured {
+  readonly trips: readonly TripFinding[]
+  readonly profiles: ReadonlyMap<string, RunProfile>
+  readonly budget: readonly BudgetLine[]
+  readonly headroom: Headroom
+}
+
+/**
+ * One probability for each suspect (methods.md §8): candidates with their windows, weighed together; then words,
+ * grades and roles. Sorted by probability, then name. A circuit or load without contrast is `unjudged`.
+ */
+export function suspects(timeline: Timeline, measured: Measured): Weighed {
+  const hours = totalMs(timeline.energised) / HOUR_MS
+  const { kept, first } = episodes(timeline)
+  const frame: Frame = { timeline, hours, trips: kept }
+  const courses = first.map((i) => measured.trips[i]?.course ?? 'unseen')
+  const candidates = kept.length === 0 || hours <= 0 ? [] : candidatesOf(frame, courses, measured)
+  const weighed: LineUp =
+    candidates.length === 0 ? { standings: [], none: 1, unexplained: 1 } : lineUp(hours, kept.length, candidates)
+  const tested = weighed.standings.flatMap((s) => {
+    const top = s.windows[0]
+    return top === undefined ? [] : [{ of: s.of, window: top.window }]
+  })
+  const prefer = new Map(preferences(Math.max(hours, 1e-9), kept.length, tested).map((p) => [p.of, p]))
+  const judged = weighed.standings.map((s) => judgedSuspect(frame, s, prefer.get(s.of), measured, weighed.standings))
+  const seen = new Set(judged.map((s) => s.of))
+  const unjudged = timeline.things.filter((t) => !seen.has(t.of)).map((t) => unjudgedSuspect(t, weighed.none))
+  const none = noneSuspect(timeline, frame, weighed)
+  const all = [...judged, ...unjudged, none]
+  all.sort((a, b) => b.probability - a.probability || (a.of < b.of ? -1 : 1))
+  return { suspects: all, frame, lineUp: weighed }
+}
+
+/** Trips as episodes: a repeat within a quarter of an hour of closing again is not news. */
+function episodes(timeline: Timeline): { kept: { from: number; to: number }[]; first: number[] } {
+  const kept: { from: number; to: number }[] = []
+  const first: number[] = []
+  let closed = Number.NEGATIVE_INFINITY
+  timeline.trips.forEach((trip, i) => {
+    if (trip.from - closed >= EPISODE_MS) {
+      kept.push({ from: trip.from, to: trip.to })
+      first.push(i)
+    }
+    closed = Math.max(closed, trip.restoredAt ?? Number.NEGATIVE_INFINITY)
+  })
+  return { kept, first }
+}
+
+function candidatesOf(frame: Frame, courses: readonly TripFinding['course'][], measured: Measured): Candidate[] {
+  const marks = (kind: CauseKind): Float64Array => Float64Array.from(courses, (course) => courseRatio(kind, course))
+  const list: Candidate[] = []
+  const add = (of: string, odds: number, kind: CauseKind, windows: readonly ExposureWindow[]): void => {
+    if (windows.length > 0) list.push({ of, odds, windows: marked(windows, marks(kind)) })
+  }
+  for (const thing of frame.timeline.things) {
+    const odds = ODDS[thing.kind] * visibleLeak(frame.timeline, thing, measured)
+    add(thing.of, odds, 'load', thingWindows(frame, thing))
+  }
+  add('rain', ODDS.rain, 'weather', rainWindows(frame))
+  add('temperature', ODDS.temperature, 'weather', temperatureWindows(frame))
+  add('clock', ODDS.clock, 'schedule', clockWindows(frame))
+  add('period', ODDS.period, 'schedule', periodWindows(frame))
+  add('sun', ODDS.sun, 'schedule', sunWindows(frame))
+  add('load-current', ODDS['load-current'], 'load-current', loadCurrentWindows(frame))
+  const always = (key: string, words: string): ExposureWindow[] => {
+    const inside = new Float64Array(frame.trips.length).fill(1)
+    return [{ key, words, prior: 1, hours: frame.hours, inside, weights: inside }]
+  }
+  const level = levelWindows(frame)
+  const tooSensitive = isTooSensitive(frame.timeline, measured.headroom)
+  if (tooSensitive) add('device', ODDS.device * 30, 'device', level.length > 0 ? level : always('any', 'at any time'))
+  else add('standing', ODDS.standing, 'standing', level)
+  add('supply', ODDS.supply, 'supply', always('any', 'together with others'))
+  add('unlisted', ODDS.unlisted, 'unlisted', always('any', 'at any time'))
+  return list
+}
+
+/** A ramp test below 0.5 IΔn, the current at which the standards forbid a trip (IEC 61008-1, IEC 61009-1, from memory). */
+function isTooSensitive(timeline: Timeline, headroom: Headroom): boolean {
+  return headroom.tripMa.basis === 'ramp-tests' && headroom.tripMa.high < 0.5 * timeline.rcd.ratedMa
+}
+
+/**
+ * How much the log changes the odds of a thing before any trip is looked at: one whose runs lift the level towards
+ * the trip current is a likelier cause than one whose runs leave no trace. Mild, for a fault may show only at trips.
+ */
+function visibleLeak(timeline: Timeline, thing: Thing, measured: Measured): number {
+  const profile = measured.profiles.get(thing.of)
+  const { standingMa, tripMa } = measured.headroom
+  if (profile === undefined || profile.runs < 3 || profile.riseMa === null || standingMa === null) return 1
+  const room = Math.max(0.1 * timeline.rcd.ratedMa, tripMa.value - standingMa.p50)
+  const reach = profile.riseMa / room
+  if (reach >= 0.6) return 3
+  if (reach >= 0.3) return 1.8
+  if (reach >= 0.1) return 1
+  return 0.5
+}
+
+function judgedSuspect(
+  frame: Frame,
+  standing: Standing,
+  preference: Preference | undefined,
+  measured: Measured,
+  all: readonly Standing[],
+): Suspect {
+  const { timeline } = frame
+  const probability = rounded(standing.probability)
+  const contrast = hasContrast(frame, standing)
+  const grade = gradeOf(probability, contrast)
+  const top = standing.windows[0]?.window
+  const same = sameExposure(frame, standing, all)
+  const leading = all.reduce((best, s) => (s.probability > best.probability ? s : best), standing)
+  const leader = leading === standing || leading.probability < 0.6 ? null : nameOf(timeline, leading.of)
+  const because: Reason[] = reasonsOf(timeline, standing.of, preference, measured, grade, leader)
+  const suspect: Suspect = {
+    of: standing.of,
+    label: nameOf(timeline, standing.of),
+    probability,
+    share: rounded(standing.share),
+    grade,
+    role: roleOf(standing.of, measured),
+    because,
+    next: nextFor(timeline, standing.of, grade, same),
+  }
+  if (same.length > 0) suspect.sameAs = same
+  if (standing.of === 'clock' && top !== undefined) suspect.localTime = top.key.split('+')[0]!
+  if (standing.of === 'period' && top !== undefined) suspect.hours = Number.parseFloat(top.key)
+  return suspect
+}
+
+/** Whether the suspect had time on both sides in which three trips could have told: a cleared suspect was tried. */
+function hasContrast(frame: Frame, standing: Standing): boolean {
+  return standing.windows.some(({ window }) => {
+    const expected = (frame.trips.length * window.hours) / frame.hours
+    return expected >= 0.5 || window.hours >= 2
+  })
+}
+
+function gradeOf(probability: number, contrast: boolean): Grade {
+  if (probability >= 0.9) return 'strong'
+  if (probability >= 0.6) return 'fair'
+  if (probability <= CLEARED && contrast) return 'cleared'
+  return 'slight'
+}
+
+/** Suspects whose best windows hold the same trips and the same hours: the data cannot tell them apart. */
+function sameExposure(frame: Frame, standing: Standing, all: readonly Standing[]): string[] {
+  const mine = standing.windows[0]?.window
+  if (mine === undefined || standing.probability < 0.05) return []
+  return all
+    .filter((other) => other !== standing && other.probability >= 0.05)
+    .filter(({ windows }) => {
+      const theirs = windows[0]?.window
+      if (theirs === undefined) return false
+      const hours = Math.abs(theirs.hours - mine.hours) <= 0.05 * Math.max(theirs.hours, mine.hours)
+      return hours && frame.trips.every((_, i) => Math.abs(theirs.inside[i]! - mine.inside[i]!) < 0.05)
+    })
+    .map((other) => other.of)
+}
+
+/** Firing trips and using up headroom are two questions; both are answered here. */
+function roleOf(of: string, measured: Measured): Role {
+  if (of === 'standing') return 'contributor'
+  const line = measured.budget.find((b) => b.of === of)
+  const standing = measured.headroom.standingMa?.p50 ?? 0
+  if (line === undefined || line.ma === null || standing === 0) return 'trigger'
+  return line.ma >= 0.15 * standing ? 'both' : 'trigger'
+}
+
+function nextFor(timeline: Timeline, of: string, grade: Grade, same: readonly string[]): string {
+  const name = nameOf(timeline, of)
+  if (same.length > 0) {
+    return `Switch ${name} and ${same.map((s) => nameOf(timeline, s)).join(', ')} at different times for some days: they were always on together.`
+  }
+  if (grade === 'cleared') return 'Nothing; look elsewhere first.'
+  const thing = timeline.things.find((t) => t.of === of)
+  if (thing?.kind === 'load')
+    return `Unplug ${name} for some days and see whether the trips stop; test its insulation at the plug.`
+  if (thing?.kind === 'circuit')
+    return `Isolate ${name} in both poles for some days; test its insulation with the loads unplugged.`
+  return NEXT[of] ?? ''
+}
+
+const NEXT: Readonly<Record<string, string>> = {
+  rain: 'Isolate the outdoor circuits in both poles in the next wet spell; open outdoor accessories and look for water.',
+  temperature: 'Look for heaters with a thermostat and for frost protection; note what runs at such temperatures.',
+  clock: 'Look for a timer, an off-peak heater or a defrost clock that switches at this time.',
+  period: 'Look for an appliance with a cycle of this length: defrost, softener, pump.',
+  sun: 'Look for lights on a photocell; isolate them for some evenings.',
+  'load-current':
+    'Test neutral to earth with the neutrals out of the bar; switching off the breaker alone changes nothing.',
+  standing: 'Spread the circuits over more devices, or take the largest contributors off this one.',
+  supply: 'Ask the network operator for events at these times; look at surge protection and earthing.',
+  device:
+    'Repeat the ramp test with all circuits disconnected; a device that opens below half its rating is to be replaced.',
+  unlisted: 'Walk the site for what is not on the sheet; clamp circuit by circuit while the level is up.',
+}
+
+function unjudgedSuspect(thing: Thing, none: number): Suspect {
+  const odds = ODDS[thing.kind]
+  const known = totalMs(union(thing.state.on, thing.state.off)) > 0
+  const text = known
+    ? `${sentence(thing)} never changed its state while trips could happen, so switching says nothing about it. That does not clear it.`
+    : `Nobody knows when ${thing.label} was on, so nothing can be said about it. That does not clear it.`
+  return {
+    of: thing.of,
+    label: thing.label,
+    probability: rounded((none * odds) / (1 + odds)),
+    share: 0,
+    grade: 'unjudged',
+    role: 'trigger',
+    because: [{ text, method: 'contrast of exposures', figures: { changes: thing.changes.length } }],
+    next:
+      thing.kind === 'circuit'
+        ? `Switch ${thing.label} off for some days, in both poles.`
+        : `Log when ${thing.label} runs, or unplug it for some days.`,
+  }
+}
+
+function sentence(thing: Thing): string {
+  return thing.label.charAt(0).toUpperCase() + thing.label.slice(1)
+}
+
+function noneSuspect(timeline: Timeline, frame: Frame, weighed: LineUp): Suspect {
+  const n = frame.trips.length
+  const probability = rounded(weighed.none)
+  return {
+    of: 'none',
+    label: nameOf(timeline, 'none'),
+    probability,
+    share: rounded(weighed.unexplained),
+    grade: n === 0 ? 'unjudged' : gradeOf(probability, n >= 3),
+    role: 'trigger',
+    because: [
+      {
+        text:
+          n === 0
+            ? 'There was no trip in this span.'
+            : `If nothing listed is behind them, trips come at ${((n / frame.hours) * 168).toFixed(1)} a week at random times.`,
+        method: 'gamma–Poisson marginal likelihood of no cause',
+        figures: { trips: n, energisedHours: rounded(frame.hours) },
+      },
+    ],
+    next: n === 0 ? 'Leave the logger on site.' : 'Leave the logger longer, and log what is not logged yet.',
+  }
+}
