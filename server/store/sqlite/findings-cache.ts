@@ -13,8 +13,8 @@ export class FindingsCache {
     this.#get = db.prepare<[string], string>('SELECT body FROM findings WHERE hash = ?').pluck()
     this.#put = db.prepare('INSERT OR REPLACE INTO findings (hash, site, at, body) VALUES (?, ?, ?, ?)')
     this.#trim = db.prepare(
-      `DELETE FROM findings WHERE site = ?1 AND num <=
-       (SELECT num FROM findings WHERE site = ?1 ORDER BY num DESC LIMIT 1 OFFSET ${KEPT_PER_SITE})`,
+      `DELETE FROM findings WHERE site = ? AND num <=
+       (SELECT num FROM findings WHERE site = ? ORDER BY num DESC LIMIT 1 OFFSET ${KEPT_PER_SITE})`,
     )
   }
 
@@ -24,6 +24,6 @@ export class FindingsCache {
 
   put(site: number, hash: string, body: string, at: number): void {
     this.#put.run(hash, site, at, body)
-    this.#trim.run(site)
+    this.#trim.run(site, site)
   }
 }

@@ -1,0 +1,12 @@
+import { mkdtempSync, rmSync } from 'node:fs'
+import { tmpdir } from 'node:os'
+import { join } from 'node:path'
+import { afterAll, describe } from 'vitest'
+import { openStore } from '../../../server/store/sqlite/index.ts'
+import { portSuite } from './port-suite.ts'
+
+describe('the store on SQLite', () => {
+  const folder = mkdtempSync(join(tmpdir(), 'leaktide-store-'))
+  afterAll(() => rmSync(folder, { recursive: true, force: true }))
+  portSuite(() => openStore(join(folder, 'data.db')))
+})
