@@ -22,7 +22,15 @@ export const KeyOut = z.object({
 /** Signing the page in with a key. */
 export const SignIn = z.object({ key: z.string().min(1).max(200) })
 /** Who the caller is. */
-export const Whoami = z.object({ role: KeyRole, site: z.string().nullable(), label: z.string() })
+export const Whoami = z.object({
+  role: KeyRole,
+  site: z.string().nullable(),
+  label: z.string(),
+  rcds: z
+    .array(z.object({ ref: z.string(), label: z.string().optional() }))
+    .optional()
+    .meta({ description: 'occupant keys only: the devices a trip can be reported of' }),
+})
 
 export type KeyRole = z.infer<typeof KeyRole>
 export type SiteKeyRole = z.infer<typeof SiteKeyRole>

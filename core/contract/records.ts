@@ -163,6 +163,9 @@ export const RemedyOut = Stored.extend({
   note: z.string().optional(),
 })
 
+export type TripOut = z.infer<typeof TripOut>
+export type SwitchingOut = z.infer<typeof SwitchingOut>
+
 /** The kinds of record a site keeps. */
 export const RECORD_KINDS = ['trip', 'switching', 'timetable', 'test', 'remedy'] as const
 export type RecordKind = (typeof RECORD_KINDS)[number]
