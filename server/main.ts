@@ -1,0 +1,68 @@
+import { type Serving, serve } from './serve.ts'
+import { readSettings, SettingsError } from './settings.ts'
+import { StoreError } from './store/port.ts'
+
+/** The process: settings, listen, signals. */
+async function main(): Promise<void> {
+  const settings = readSettings(process.argv.slice(2))
+  const stopping = signalled()
+  const serving = await serve(settings)
+  tell(serving)
+  await stopping
+  await serving.stop()
+}
+
+function tell({ url, madeKey, warnings }: Serving): void {
+  for (const warning of warnings) process.stderr.write(`${warning}\n`)
+  if (madeKey !== undefined) say(`owner key, shown this once: ${madeKey}`)
+  say(`listening on ${url}`)
+}
+
+function say(line: string): void {
+  process.stdout.write(`${line}\n`)
+}
+
+/** Resolves with the first signal to stop; a second one ends the process at once. */
+function signalled(): Promise<void> {
+  return new Promise((resolve) => {
+    let seen = false
+    const stop = (): void => {
+      if (seen) process.exit(1)
+      seen = true
+      resolve()
+    }
+    process.on('SIGTERM', stop)
+    process.on('SIGINT', stop)
+  })
+}
+
+/** Why the server cannot start, for the causes that a person can do something about. */
+function explain(error: unknown): string | undefined {
+  if (error instanceof SettingsError || error instanceof StoreError) return error.message
+  if (!(error instanceof Error) || !('code' in error)) return undefined
+  switch (error.code) {
+    case 'EADDRINUSE':
+      return 'Another program already listens on this address; choose another with --port.'
+    case 'EADDRNOTAVAIL':
+    case 'ENOTFOUND':
+      return 'This machine does not have that address; choose another with --host.'
+    case 'EACCES':
+    case 'EPERM':
+    case 'EROFS':
+    case 'ENOTDIR':
+    case 'EEXIST':
+    case 'SQLITE_CANTOPEN':
+      return `The data folder or the port cannot be used: ${error.message}`
+    default:
+      return undefined
+  }
+}
+
+main().then(
+  () => process.exit(0),
+  (error: unknown) => {
+    const sentence = explain(error)
+    process.stderr.write(`${sentence ?? (error instanceof Error ? error.stack : String(error))}\n`)
+    process.exit(1)
+  },
+)
