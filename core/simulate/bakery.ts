@@ -265,7 +265,7 @@ function shop(): CircuitPlan[] {
       ref: '13',
       label: 'Outdoor socket',
       standing: { g: 0.05, b: 0.4 },
-      damp: { mA: 36, lagHours: 2, decayHours: 6, soakMm: 5 },
+      damp: { mA: 34, lagHours: 2, decayHours: 6, soakMm: 5 },
       loads: [],
     },
   ]

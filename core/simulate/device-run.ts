@@ -125,10 +125,10 @@ export function runDevice(rcd: RcdPlan, site: RunSite, watch: (moment: Moment) =
       surge++
     }
     if (by !== null && t > from) {
-      const at = Math.round(t - flicker.uniform() * dt)
+      const at = Math.round(Math.max(lastClosed + 40, t - flicker.uniform() * dt))
       streak = at - lastClosed < 10 * MINUTE && trips.length > 0 ? streak + 1 : 0
       const running = loads.filter((_, k) => moment.on[k] === 1).map((load) => `load:${load.plan.ref}`)
-      opensUntil = Math.max(t + dt, site.keeper.restoredAt(at, streak))
+      opensUntil = Math.max(at + dt, site.keeper.restoredAt(at, streak))
       trips.push({
         rcd: rcd.ref,
         at,

@@ -1,0 +1,153 @@
+import { draws } from '../draws.ts'
+import type { Installation, LoadPlan } from '../installation.ts'
+import type { Plan } from '../simulate.ts'
+import type { Simulated } from '../simulated.ts'
+import { drawFault, neededMa, pickCulprit } from './culprit.ts'
+import { drawGround, type Ground, withLoad, withRcd } from './ground.ts'
+import { tuned } from './tune.ts'
+
+const HOUR = 3_600_000
+const DAY = 24 * HOUR
+
+/** An outdoor circuit suffers in rain, hours later. */
+export function rainLag(seed: number): Simulated {
+  const ground = withWeather(drawGround(seed, { days: 21, spellsPerWeek: 5 }))
+  return tuned(rainPlans(ground, seed, 'rain-lag'), 5, 14)
+}
+
+/** A load leaks when on, and rain does harm too. */
+export function twoCauses(seed: number): Simulated {
+  const random = draws(seed, 'two-causes')
+  const ground = withWeather(drawGround(seed, { days: 21, spellsPerWeek: 4 }))
+  const { load, circuit } = pickCulprit(ground, random)
+  const culprit = `load:${load.ref}`
+  const needed = neededMa(ground)
+  const rain = rainPlans(ground, seed, 'two-causes')
+  const planAt = (strength: number): Plan => {
+    const plan = rain(strength)
+    const bad: LoadPlan = { ...load, monitored: true, fault: drawFault('when-on', strength * needed, seed) }
+    return {
+      ...plan,
+      installation: withLoad(plan.installation, bad, circuit),
+      truth: { rcd: 'A', kind: 'two-causes', causes: [culprit, 'rain'], answers: [culprit, 'rain'] },
+    }
+  }
+  return tuned(planAt, 9, 18)
+}
+
+function rainPlans(ground: Ground, seed: number, kind: string): (strength: number) => Plan {
+  const random = draws(seed, 'damp')
+  const needed = neededMa(ground)
+  const damping = {
+    lagHours: random.between(0.5, 5),
+    decayHours: random.between(3, 14),
+    soakMm: random.between(2, 7),
+  }
+  const place = random.integer(ground.installation.rcds[0]!.circuits.length)
+  return (strength) => ({
+    ...ground,
+    installation: withRcd(ground.installation, (rcd) => ({
+      ...rcd,
+      circuits: rcd.circuits.map((circuit, c) =>
+        c === place ? { ...circuit, damp: { ...damping, mA: 1.3 * strength * needed } } : circuit,
+      ),
+    })),
+    truth: { rcd: 'A', kind, causes: ['rain'], answers: ['rain'] },
+  })
+}
+
+/** Neutral touches earth: the residual follows the load current of the whole group. */
+export function neutralEarth(seed: number): Simulated {
+  const drawn = drawGround(seed, { days: 14, loads: [8, 12] })
+  const ground = drawn.logger ? { ...drawn, logger: { ...drawn.logger, loadCurrent: true } } : drawn
+  const needed = neededMa(ground)
+  return tuned(
+    (strength) => ({
+      ...ground,
+      installation: withRcd(ground.installation, (rcd) => ({ ...rcd, neutralEarth: (strength * needed) / 25 })),
+      truth: { rcd: 'A', kind: 'neutral-earth', causes: ['load-current'], answers: ['load-current'] },
+    }),
+    5,
+    14,
+  )
+}
+
+/** Nothing is broken: many small leakages together now and then reach the trip current. */
+export function standing(seed: number): Simulated {
+  const ground = drawGround(seed, { days: 14, loads: [9, 13], reach: [0.97, 1] })
+  return tuned(
+    (strength) => ({
+      ...ground,
+      installation: withRcd(ground.installation, (rcd) => ({
+        ...rcd,
+        circuits: rcd.circuits.map((circuit) => ({
+          ...circuit,
+          standing: { g: circuit.standing.g, b: circuit.standing.b * strength },
+        })),
+      })),
+      truth: { rcd: 'A', kind: 'standing', causes: ['standing'], answers: ['standing'] },
+    }),
+    5,
+    14,
+  )
+}
+
+/** The electrician switches one circuit after the other off, each for a while; nothing says which loads run. */
+export function isolationInTurn(seed: number): Simulated {
+  return circuitScenario(seed, 'isolation-in-turn', (ground) => ground.logger)
+}
+
+/** No logger at all: switchings and trips as people wrote them down. */
+export function diaryOnly(seed: number): Simulated {
+  return circuitScenario(seed, 'diary-only', () => null)
+}
+
+function circuitScenario(seed: number, kind: string, logger: (ground: Ground) => Plan['logger']): Simulated {
+  const random = draws(seed, kind)
+  const drawn = drawGround(seed, { days: 21, idleSwitching: 0 })
+  const ground: Ground = { ...drawn, installation: unwatched(drawn.installation), logger: logger(drawn) }
+  const { load, circuit } = pickCulprit(ground, random)
+  const place = ground.installation.rcds[0]!.circuits[circuit]!
+  const cause = `circuit:${place.ref}`
+  const needed = neededMa(ground)
+  // A load that is alone on its circuit is the same suspect.
+  const answers = place.loads.length === 1 ? [cause, `load:${load.ref}`] : [cause]
+  const isolating = inTurn(ground, random.between(1.5, 3))
+  const planAt = (strength: number): Plan => ({
+    ...ground,
+    installation: {
+      ...withLoad(
+        ground.installation,
+        { ...load, monitored: false, fault: drawFault('when-on', strength * needed, seed) },
+        circuit,
+      ),
+      isolating,
+    },
+    people: { ...ground.people, suspects: [] },
+    truth: { rcd: 'A', kind, causes: [cause], answers },
+  })
+  return tuned(planAt, 14, 30)
+}
+
+function unwatched(installation: Installation): Installation {
+  return withRcd(installation, (rcd) => ({
+    ...rcd,
+    circuits: rcd.circuits.map((circuit) => ({
+      ...circuit,
+      loads: circuit.loads.map((load) => ({ ...load, monitored: false })),
+    })),
+  }))
+}
+
+/** Each circuit off once, one after the other, `days` each, with half a day between. */
+function inTurn(ground: Ground, days: number): Installation['isolating'] {
+  const { circuits } = ground.installation.rcds[0]!
+  return circuits.map((circuit, i) => {
+    const from = ground.from + 2 * DAY + i * (days * DAY + 12 * HOUR)
+    return { of: `circuit:${circuit.ref}`, from, to: Math.min(ground.to, from + days * DAY), told: true }
+  })
+}
+
+function withWeather(ground: Ground): Ground {
+  return ground.logger ? { ...ground, logger: { ...ground.logger, weather: true } } : ground
+}
