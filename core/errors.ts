@@ -7,6 +7,7 @@ export type CoreErrorCode =
   | 'not_ascending'
   | 'out_of_range'
   | 'no_convergence'
+  | 'singular'
   | 'unknown_time_zone'
   | 'unknown_reference'
   | 'corrupt_data'

@@ -1,9 +1,11 @@
-// Distributions and their parts
 export { benjaminiHochberg } from './benjamini-hochberg.ts'
 export { binomialCdf, binomialPmf, binomialUpperTail } from './binomial.ts'
 export { chiSquaredCdf, chiSquaredUpperTail } from './chi-squared.ts'
 export { binomialTest, clopperPearson, type Proportion } from './clopper-pearson.ts'
+export type { ConditionalOdds } from './conditional-odds.ts'
+export type { Design } from './design.ts'
 export type { ExactPValues } from './exact-test.ts'
+export { fisherExact, type Table } from './fisher-exact.ts'
 export {
   type GammaBelief,
   gammaPoisson,
@@ -18,16 +20,33 @@ export {
 export { gammaQuantile } from './gamma-quantile.ts'
 export { type GammaTails, gammaRegularised } from './gamma-regularised.ts'
 export { hashText } from './hash-text.ts'
+export { hodgesLehmann, hodgesLehmannShift } from './hodges-lehmann.ts'
 export { holm } from './holm.ts'
+export { type HuberFit, type HuberOptions, huberRegression } from './huber-regression.ts'
+export { type LeastSquares, leastSquares } from './least-squares.ts'
 export { logChoose } from './log-choose.ts'
 export { logGamma } from './log-gamma.ts'
 export { MAD_TO_SIGMA, mad } from './mad.ts'
+export { type MannKendall, mannKendall } from './mann-kendall.ts'
+export {
+  breslowDay,
+  type Homogeneity,
+  type MantelHaenszel,
+  type MantelHaenszelRates,
+  mantelHaenszel,
+  mantelHaenszelExact,
+  mantelHaenszelRates,
+  type RateStratum,
+} from './mantel-haenszel.ts'
 export { median, medianSorted } from './median.ts'
+export { type Nnls, nnls } from './nnls.ts'
 export { poissonCdf, poissonUpperTail } from './poisson-cdf.ts'
 export { logPoissonPmf, poissonPmf } from './poisson-pmf.ts'
 export { type PoissonRate, poissonRate, poissonRateTest } from './poisson-rate.ts'
 export { type PoissonRateRatio, poissonRateRatio } from './poisson-rate-ratio.ts'
+export { type Qr, qr } from './qr.ts'
 export { type QuantileType, quantile, quantileSorted } from './quantile.ts'
 export { type Random, seededRandom } from './random.ts'
 export { ruleOfThree } from './rule-of-three.ts'
+export { type TheilSen, theilSen } from './theil-sen.ts'
 export { weightedQuantile, weightedQuantiles } from './weighted-quantile.ts'
