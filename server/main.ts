@@ -22,13 +22,17 @@ function say(line: string): void {
   process.stdout.write(`${line}\n`)
 }
 
-/** Resolves with the first signal to stop; a second one ends the process at once. */
+/** Two signals closer than this are one key press: Ctrl-C reaches this process, and npm passes it on once more. */
+const ONE_PRESS_MS = 1_000
+
+/** Resolves with the first signal to stop; a later one ends the process at once. */
 function signalled(): Promise<void> {
   return new Promise((resolve) => {
-    let seen = false
+    let first: number | undefined
     const stop = (): void => {
-      if (seen) process.exit(1)
-      seen = true
+      const at = performance.now()
+      if (first !== undefined && at - first > ONE_PRESS_MS) process.exit(1)
+      first ??= at
       resolve()
     }
     process.on('SIGTERM', stop)

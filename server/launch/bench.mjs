@@ -2,8 +2,9 @@
 import { join } from 'node:path'
 import { ROOT } from './paths.mjs'
 import { prepare } from './prepare.mjs'
-import { run } from './run.mjs'
+import { run, stopChildrenOnSignal } from './run.mjs'
 
 if (!(await prepare())) process.exit(1)
+stopChildrenOnSignal()
 const bench = join(ROOT, 'tests', 'bench', 'run.ts')
 process.exitCode = await run(process.execPath, ['--import', 'tsx', bench, ...process.argv.slice(2)])

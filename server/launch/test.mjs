@@ -5,7 +5,7 @@ import { join } from 'node:path'
 import { findChromium } from './chromium.mjs'
 import { ROOT, SCRATCH } from './paths.mjs'
 import { prepare } from './prepare.mjs'
-import { runNode } from './run.mjs'
+import { runNode, stopChildrenOnSignal } from './run.mjs'
 import { tally } from './tally.mjs'
 
 const tool = (/** @type {string} */ name) => join(ROOT, 'node_modules', name)
@@ -22,6 +22,7 @@ if (!(await prepare())) {
   process.exit(1)
 }
 
+stopChildrenOnSignal()
 const wanted = process.argv.slice(2)
 let passed = 0
 let failed = 0
