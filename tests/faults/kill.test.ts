@@ -52,11 +52,11 @@ describe('a server that is told to stop', () => {
 
   it.each(['SIGTERM', 'SIGINT'] as const)(
     'by %s finishes what is in flight, ends with 0 and keeps it',
-    async (signal) => {
+    async (signal, times) => {
       const ledger = new Ledger(await makeSite(server), SEED + 1)
       const posting = ledger.postUntilBroken(server.url)
       await sleep(150)
-      const ending = await server.end(signal)
+      const ending = await server.end(signal, times)
       await posting
       expect(ending).toMatchObject({ code: 0, signal: null })
       expect(ledger.answered.length).toBeGreaterThan(0)

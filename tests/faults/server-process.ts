@@ -3,6 +3,7 @@ import { once } from 'node:events'
 import { mkdtempSync, rmSync } from 'node:fs'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
+import { setTimeout as sleep } from 'node:timers/promises'
 import { make, outOfDate } from '../../server/launch/build.mjs'
 import { withLock } from '../../server/launch/lock.mjs'
 import { ROOT, SCRATCH } from '../../server/launch/paths.mjs'
@@ -21,8 +22,8 @@ export interface Ending {
 /** A real server in a process of its own. */
 export interface ServerProcess {
   readonly url: string
-  /** Sends the signal and waits for the end. */
-  end(signal: NodeJS.Signals): Promise<Ending>
+  /** Sends the signal, once or more, and waits for the end. */
+  end(signal: NodeJS.Signals, times?: number): Promise<Ending>
 }
 
 /** Builds the server where its sources changed: these tests run what `npm start` runs. */
@@ -54,8 +55,11 @@ export async function startServer(data: string, env: Readonly<Record<string, str
     throw new Error(`the server ended with ${first.code} before it listened:\n${first.output}`)
   return {
     url: first,
-    end: async (signal) => {
-      child.kill(signal)
+    end: async (signal, times = 1) => {
+      for (let n = 0; n < times; n++) {
+        child.kill(signal)
+        if (n < times - 1) await sleep(20) // two that wait together would be delivered as one
+      }
       return ended
     },
   }
