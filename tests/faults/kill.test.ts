@@ -50,8 +50,12 @@ describe('a server that is told to stop', () => {
   })
   afterAll(folder.remove)
 
-  it.each(['SIGTERM', 'SIGINT'] as const)(
-    'by %s finishes what is in flight, ends with 0 and keeps it',
+  it.each([
+    ['SIGTERM', 1],
+    ['SIGINT', 1],
+    ['SIGINT', 2], // Ctrl-C below npm: the terminal sends it, and npm sends it on
+  ] as const)(
+    'by %s, %i times, finishes what is in flight, ends with 0 and keeps it',
     async (signal, times) => {
       const ledger = new Ledger(await makeSite(server), SEED + 1)
       const posting = ledger.postUntilBroken(server.url)
