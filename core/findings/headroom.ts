@@ -22,7 +22,7 @@ export function headroom(timeline: Timeline): Headroom {
           p5: rounded(heldQuantile(levels, 0.05)),
           p50: rounded(heldQuantile(levels, 0.5)),
           p95: rounded(heldQuantile(levels, 0.95)),
-          max: rounded(levels.values.at(-1)!),
+          max: rounded(levels.max),
         }
   return {
     tripMa: {

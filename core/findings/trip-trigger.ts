@@ -11,6 +11,8 @@ const STEP_SLACK_MS = MINUTE_MS
 const CREEP_MS = 40 * MINUTE_MS
 /** Switching off may fire a device by its transient, but only at once. */
 const OFF_MS = 10_000
+/** What ends within so much of the trip ended with it. */
+const AT_ONCE_MS = 1_000
 
 /** What changed within the delay that the course of a trip allows. */
 export interface Trigger {
@@ -33,11 +35,9 @@ export function triggerOf(timeline: Timeline, fact: TripFact, lines: readonly Bu
   const until = fact.course === 'step' && fact.roseAt !== null ? Math.min(end, fact.roseAt + STEP_SLACK_MS) : end
   let best: { trigger: Trigger; ma: number } | null = null
   for (const thing of timeline.things) {
-    const change = lastChange(thing, until)
+    const change = changeBehind(thing, fact, trip.from, since, until)
     if (change === null) continue
     const agoMs = Math.max(0, trip.from - change.at)
-    const allowed = change.on ? change.at >= since : fact.course === 'sudden' && trip.from - change.at <= OFF_MS
-    if (!allowed) continue
     // What falls when it comes on has not fired a rise.
     const ma = change.on ? (lines.find((l) => l.of === thing.of)?.ma ?? 0) : 0
     if (ma < 0) continue
@@ -53,8 +53,21 @@ function earliest(fact: TripFact, tripAt: number): number {
   return tripAt - (fact.course === 'creep' ? CREEP_MS : SUDDEN_MS)
 }
 
-/** The latest change at or before t. O(log n). */
-function lastChange(thing: Thing, t: number): Change | null {
+/** The change of one thing that may be behind the trip: its last start, unless it ended before the rise; or its end. */
+function changeBehind(thing: Thing, fact: TripFact, tripAt: number, since: number, until: number): Change | null {
+  let k = lastChange(thing, until)
+  // An end at the trip is the trip's doing.
+  while (k >= 0 && !thing.changes[k]!.on && thing.changes[k]!.at > tripAt - AT_ONCE_MS) k--
+  const last = thing.changes[k]
+  if (last === undefined) return null
+  if (last.on) return last.at >= since ? last : null
+  if (fact.course === 'sudden') return tripAt - last.at <= OFF_MS ? last : null
+  const start = thing.changes[k - 1]
+  return fact.roseAt !== null && last.at >= fact.roseAt && start?.on && start.at >= since ? start : null
+}
+
+/** Position of the latest change at or before t, -1 when none. O(log n). */
+function lastChange(thing: Thing, t: number): number {
   let low = 0
   let high = thing.changes.length
   while (low < high) {
@@ -62,5 +75,5 @@ function lastChange(thing: Thing, t: number): Change | null {
     if (thing.changes[middle]!.at <= t) low = middle + 1
     else high = middle
   }
-  return low === 0 ? null : thing.changes[low - 1]!
+  return low - 1
 }
