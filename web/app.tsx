@@ -26,7 +26,6 @@ export function App(): JSX.Element {
     setSession({ state: 'asking' })
     enter().then(setSession, (error: unknown) => setSession({ state: 'failed', error }))
   }
-  // biome-ignore lint/correctness/useExhaustiveDependencies: asks once, when the page opens
   useEffect(ask, [])
   switch (session.state) {
     case 'asking':

@@ -106,7 +106,8 @@ export const words = {
   },
   strip: {
     heading: 'The strip',
-    leakage: 'Leakage',
+    leakage: 'Leakage, mA',
+    milliamps: 'mA',
     keys: 'Drag or pinch to zoom in; wheel, or + and −, zooms; arrow left and right move, Shift with them moves the cursor; Home shows everything.',
     describe: 'Leakage over time with trips, circuits and loads',
     closer: 'Zoom in',
@@ -182,7 +183,8 @@ export const words = {
     sentence: (what: { standing: string; trip: string; range: string; basis: string; left: string }) =>
       `Standing leakage is ${what.standing} half the time; the device opens at ${what.trip} (${what.range}, ${what.basis}). That leaves ${what.left}.`,
     noneLeft: 'nothing',
-    advised: (share: string, advised: string) => `That is ${share} of IΔn; ${advised} is advised at most.`,
+    advised: (share: string, advised: string) =>
+      `The standing leakage is ${share} of IΔn; at most ${advised} is advised.`,
     bar: 'Who holds how much, from zero to the trip current',
     rest: 'Not switched in this period, or on no list',
     on: 'usually on',

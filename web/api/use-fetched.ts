@@ -21,7 +21,6 @@ export function useFetched<T>(
   const [state, setState] = useState<Fetched<T> & { key: string | null }>({ key, value: null, error: null, busy: true })
   const latest = useRef(fetcher)
   latest.current = fetcher
-  // biome-ignore lint/correctness/useExhaustiveDependencies: a new version asks again with the same key
   useEffect(() => {
     if (key === null) return
     const aborter = new AbortController()

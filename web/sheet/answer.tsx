@@ -17,7 +17,12 @@ export function Answer({ findings, busy, error, again }: AnswerProps): JSX.Eleme
   const say = words.answer
   return (
     <section class="answer" aria-labelledby="answer-heading" aria-busy={busy}>
-      <h2 id="answer-heading">{say.heading}</h2>
+      <div class="answer-head">
+        <h2 id="answer-heading">{say.heading}</h2>
+        <p class="again" role="status">
+          {findings !== null && busy ? say.again : ''}
+        </p>
+      </div>
       {findings === null && busy && <Loading text={say.working} />}
       {findings !== null && (
         <>
@@ -32,9 +37,6 @@ export function Answer({ findings, busy, error, again }: AnswerProps): JSX.Eleme
         </>
       )}
       {error !== null && <Trouble error={error} what={say.failed} kept={findings !== null} again={again} />}
-      <p class="again" role="status">
-        {findings !== null && busy ? say.again : ''}
-      </p>
       <p class="caution">{say.caution}</p>
     </section>
   )

@@ -43,7 +43,6 @@ function Drawn({ circuits }: { circuits: number }): JSX.Element {
       <rect x="10" y="19" width="10" height="16" rx="1" class="drawn-lever" />
       <circle cx="27" cy="24" r="3.2" class="drawn-test" />
       {Array.from({ length: ways }, (_, i) => (
-        // biome-ignore lint/suspicious/noArrayIndexKey: ways have no other identity here
         <g key={i} transform={`translate(${41 + i * 11} 0)`}>
           <rect x="0" y="6" width="9" height="44" rx="1" class="drawn-body" />
           <rect x="2.5" y="20" width="4" height="12" class="drawn-lever" />

@@ -81,10 +81,9 @@ function limit(
   ctx.textBaseline = 'bottom'
   ctx.textAlign = 'right'
   const x = plot.bbox.left + plot.bbox.width - 4 * ratio
-  ctx.lineWidth = 4 * ratio
-  ctx.lineJoin = 'round'
-  ctx.strokeStyle = palette.ground
-  ctx.strokeText(text, x, y - 2 * ratio)
+  const label = ctx.measureText(text).width + 8 * ratio
+  ctx.fillStyle = palette.ground
+  ctx.fillRect(x + 4 * ratio - label, y - 17 * ratio, label, 16 * ratio)
   ctx.fillStyle = colour
   ctx.fillText(text, x, y - 2 * ratio)
 }

@@ -68,7 +68,7 @@ export function Strip(props: StripProps): JSX.Element {
   }, [props.focus])
 
   const wide = width >= WIDE
-  const gutter = wide ? 190 : 34
+  const gutter = wide ? 190 : 38
   const plotWidth = Math.max(0, width - gutter - RIGHT)
   const columns = Math.round(plotWidth * (devicePixelRatio || 1))
   const version = retry + live.readings
@@ -135,6 +135,9 @@ export function Strip(props: StripProps): JSX.Element {
         lanes={lanes}
       />
       <div class={`strip-body ${wide ? 'wide' : 'narrow'}`} ref={holder} aria-busy={main.busy}>
+        <span class="axis-name aside" aria-hidden="true">
+          {wide ? say.leakage : say.milliamps}
+        </span>
         <div class="strip-flags" style={{ marginLeft: `${gutter}px` }}>
           <FlagRow
             marks={trips}

@@ -32,7 +32,6 @@ export function TracePlot(props: TracePlotProps): JSX.Element {
   now.current = props
   const { trace, view, top, width, height, gutter, palette, marks } = props
 
-  // biome-ignore lint/correctness/useExhaustiveDependencies: made once for a gutter; the rest is set on the plot below
   useEffect(() => {
     if (holder.current === null || width === 0) return
     plot.current = new uPlot(optionsOf(now), dataOf(now.current.trace), holder.current)
@@ -53,9 +52,14 @@ export function TracePlot(props: TracePlotProps): JSX.Element {
       drawn.setScale('y', { min: 0, max: top })
     })
   }, [trace, view.from, view.to, top, gutter, width])
-  // biome-ignore lint/correctness/useExhaustiveDependencies: colours and marks are read while drawing
   useEffect(() => plot.current?.redraw(false, true), [palette, marks])
   return <div class="trace-plot" ref={holder} aria-hidden="true" />
+}
+
+/** A label half outside the drawing says less than none. */
+function fits(plot: uPlot, at: number): boolean {
+  const x = plot.valToPos(at, 'x', true) / uPlot.pxRatio
+  return x > 36 && x < plot.width - 36
 }
 
 function dataOf(trace: Trace | null): uPlot.AlignedData {
@@ -87,7 +91,7 @@ function optionsOf(now: { readonly current: TracePlotProps }): uPlot.Options {
         grid: { stroke: () => now.current.palette.line, width: 1 },
         ticks: { show: false },
         splits: (plot) => ticks(plot).map((tick) => tick.at),
-        values: (plot) => ticks(plot).map((tick) => tick.text),
+        values: (plot) => ticks(plot).map((tick) => (fits(plot, tick.at) ? tick.text : '')),
       },
       {
         ...axis(),

@@ -54,7 +54,6 @@ export function useTraces({ site, channels, view, columns, version }: Request): 
       clearTimeout(timer)
       aborter.abort()
     }
-    // biome-ignore lint/correctness/useExhaustiveDependencies: a new version asks again for the same pixels
   }, [site, list, view.from, view.to, columns, version])
   return state
 }
