@@ -15,17 +15,21 @@ export function traceColumns(series: Series, from: number, to: number, columns: 
   return gathered.finish(gapMs)
 }
 
-/** A series with one NaN halfway in each gap longer than `gapMs`; none when that is NaN. */
+/** A series with one NaN halfway in each gap longer than `gapMs`; none when that is NaN. Always fresh arrays. */
 function breakGaps({ t, v }: Series, gapMs: number): Series {
-  const outT: number[] = []
-  const outV: number[] = []
+  let gaps = 0
+  for (let i = 1; i < t.length; i++) if (t[i]! - t[i - 1]! > gapMs) gaps++
+  if (gaps === 0) return { t: t.slice(), v: v.slice() }
+  const outT = new Float64Array(t.length + gaps)
+  const outV = new Float64Array(t.length + gaps)
+  let n = 0
   for (let i = 0; i < t.length; i++) {
     if (i > 0 && t[i]! - t[i - 1]! > gapMs) {
-      outT.push((t[i]! + t[i - 1]!) / 2)
-      outV.push(Number.NaN)
+      outT[n] = (t[i]! + t[i - 1]!) / 2
+      outV[n++] = Number.NaN
     }
-    outT.push(t[i]!)
-    outV.push(v[i]!)
+    outT[n] = t[i]!
+    outV[n++] = v[i]!
   }
-  return { t: Float64Array.from(outT), v: Float64Array.from(outV) }
+  return { t: outT, v: outV }
 }

@@ -2,7 +2,7 @@ import type { Store, StoreReader } from '../port.ts'
 import { openForReading, openForWriting } from './connection.ts'
 import { translateFault } from './faults.ts'
 import { claimForWriting } from './lock.ts'
-import { migrate, migrationsFolder } from './migrate.ts'
+import { checkSchema, migrate, migrationsFolder } from './migrate.ts'
 import { SqliteReader } from './reader.ts'
 import { SqliteStore } from './store.ts'
 
@@ -35,10 +35,20 @@ export async function openStore(file: string, options: OpenOptions = {}): Promis
   }
 }
 
-/** Opens the data file for reading on a connection of its own, beside the writing process. @throws {StoreError} corrupt */
+/**
+ * Opens the data file for reading on a connection of its own, beside the writing process.
+ * @throws {StoreError} newer_schema, changed_migration, corrupt
+ */
 export async function openReader(file: string): Promise<StoreReader> {
   try {
-    return new SqliteReader(openForReading(file))
+    const db = openForReading(file)
+    try {
+      checkSchema(db, migrationsFolder())
+      return new SqliteReader(db)
+    } catch (error) {
+      db.close()
+      throw error
+    }
   } catch (error) {
     throw translateFault(error)
   }

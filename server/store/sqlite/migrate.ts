@@ -34,14 +34,8 @@ function readMigrations(folder: string): readonly Migration[] {
     })
 }
 
-/**
- * Brings the schema up to date: each new migration in one transaction, recorded with its checksum.
- * @throws {StoreError} newer_schema, changed_migration
- */
-export function migrate(db: Database.Database, folder: string): void {
-  const migrations = readMigrations(folder)
-  db.exec(`CREATE TABLE IF NOT EXISTS migration (
-    version INTEGER PRIMARY KEY, name TEXT NOT NULL, checksum TEXT NOT NULL, applied_at INTEGER NOT NULL) STRICT`)
+/** @throws {StoreError} newer_schema, changed_migration when what was applied is not what the program knows */
+function checkApplied(db: Database.Database, migrations: readonly Migration[]): ReadonlySet<number> {
   const applied = db
     .prepare<[], { version: number; name: string; checksum: string }>('SELECT version, name, checksum FROM migration')
     .all()
@@ -61,7 +55,23 @@ export function migrate(db: Database.Database, folder: string): void {
       )
     }
   }
-  const done = new Set(applied.map((row) => row.version))
+  return new Set(applied.map((row) => row.version))
+}
+
+/** Refuses data that this program does not know, without changing them. @throws {StoreError} as `migrate` */
+export function checkSchema(db: Database.Database, folder: string): void {
+  checkApplied(db, readMigrations(folder))
+}
+
+/**
+ * Brings the schema up to date: each new migration in one transaction, recorded with its checksum.
+ * @throws {StoreError} newer_schema, changed_migration
+ */
+export function migrate(db: Database.Database, folder: string): void {
+  const migrations = readMigrations(folder)
+  db.exec(`CREATE TABLE IF NOT EXISTS migration (
+    version INTEGER PRIMARY KEY, name TEXT NOT NULL, checksum TEXT NOT NULL, applied_at INTEGER NOT NULL) STRICT`)
+  const done = checkApplied(db, migrations)
   const record = db.prepare('INSERT INTO migration (version, name, checksum, applied_at) VALUES (?, ?, ?, ?)')
   for (const migration of migrations) {
     if (done.has(migration.version)) continue

@@ -1,14 +1,15 @@
 import type Database from 'better-sqlite3'
 import type { KeyRole, RecordBodies, RecordKind, SiteSheet } from '../../../core/contract/index.ts'
-import type {
-  Act,
-  AppendReport,
-  KeepReport,
-  KeyRecord,
-  ReadingBatch,
-  SiteRecord,
-  Store,
-  StoredRecord,
+import {
+  type Act,
+  type AppendReport,
+  type KeepReport,
+  type KeyRecord,
+  type ReadingBatch,
+  type SiteRecord,
+  type Store,
+  type StoredRecord,
+  StoreError,
 } from '../port.ts'
 import { FindingsCache } from './findings-cache.ts'
 import { Keys } from './keys.ts'
@@ -28,6 +29,7 @@ export class SqliteStore extends SqliteReader implements Store {
   readonly #cache: FindingsCache
   readonly #letGo: () => void
   #recentRows: number
+  #settleAbove = RECENT_LIMIT
 
   /** @param letGo releases the claim on the file, after the connection is closed */
   constructor(db: Database.Database, letGo: () => void) {
@@ -67,7 +69,7 @@ export class SqliteStore extends SqliteReader implements Store {
     batches: readonly ReadingBatch[],
     options: { readonly replace?: boolean } = {},
   ): Promise<AppendReport> {
-    if (this.#recentRows > RECENT_LIMIT) await this.settle(SETTLED_BY_APPEND)
+    if (this.#recentRows > this.#settleAbove) await this.#settleSome()
     const { report, recentRows } = this.write(() => {
       const num = this.siteTable.need(site)
       const done = this.#writing.append(num, batches, options.replace === true)
@@ -87,6 +89,17 @@ export class SqliteStore extends SqliteReader implements Store {
       this.#recentRows -= sealed
     }
     return moved
+  }
+
+  /** Brings some recent rows to rest. A damaged block in the way is told to whoever reads it; intake goes on. */
+  async #settleSome(): Promise<void> {
+    try {
+      await this.settle(SETTLED_BY_APPEND)
+      this.#settleAbove = RECENT_LIMIT
+    } catch (error) {
+      if (!(error instanceof StoreError && error.code === 'corrupt')) throw error
+      this.#settleAbove = this.#recentRows + SETTLED_BY_APPEND
+    }
   }
 
   async keep<K extends RecordKind>(

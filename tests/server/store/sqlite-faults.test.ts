@@ -59,6 +59,7 @@ describe('migrations', () => {
     more('CREATE TABLE more (x INTEGER) STRICT;\n')
     await (await openStore(file, { migrations })).close()
     await expect(openStore(file)).rejects.toEqual(code('newer_schema'))
+    await expect(openReader(file)).rejects.toEqual(code('newer_schema'))
     more('CREATE TABLE other (x INTEGER) STRICT;\n')
     await expect(openStore(file, { migrations })).rejects.toEqual(code('changed_migration'))
     // A checkout with other line ends is the same migration.
@@ -208,5 +209,23 @@ describe('a damaged block', () => {
     expect((await store.readings(site, 'tails-a', T0, T0 + HOUR)).t).toHaveLength(3_600)
     expect((await store.readings(site, 'tails-a', T0 + 2 * HOUR, T0 + 3 * HOUR)).t).toHaveLength(3_600)
     expect((await store.extents(site))[0]!.count).toBe(3 * 3_600)
+  })
+
+  it('in the way of settling does not stop intake', async () => {
+    const file = newFile()
+    const before = await openStore(file)
+    const site = (await before.createSite(bakery(), ACT)).id
+    await before.append(site, [batch(regular(40))])
+    await before.close()
+    const db = new Database(file)
+    db.exec('UPDATE block SET crc = crc + 1')
+    db.close()
+
+    const store = await open(file)
+    await store.append(site, [batch([[T0 + HOUR - 1, 1]])])
+    await expect(store.settle(10)).rejects.toEqual(code('corrupt'))
+    const rows = regular(34_000, T0 + HOUR).map(([t, v], i): [number, number] => [t + 239_000 * i, v])
+    for (let i = 0; i < rows.length; i += 2_000) await store.append(site, [batch(rows.slice(i, i + 2_000))])
+    expect((await store.readings(site, 'tails-a', T0 + HOUR, T0 * 2)).t).toHaveLength(rows.length)
   })
 })
