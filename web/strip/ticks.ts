@@ -47,7 +47,10 @@ function timeTicks(view: View, clock: SiteClock, step: number): Tick[] {
   for (let midnight = clock.midnight(view.from); midnight <= view.to; midnight = clock.midnight(midnight, 1)) {
     const next = clock.midnight(midnight, 1)
     const { year, month, day } = clock.wall(midnight)
-    for (let local = 0; local < DAY; local += step) {
+    // The clock may have been changed by up to two hours since midnight, so that much is looked at on both sides.
+    const first = Math.max(0, Math.floor((view.from - midnight - 2 * HOUR) / step) * step)
+    const last = Math.min(DAY, view.to - midnight + 2 * HOUR)
+    for (let local = first; local < last; local += step) {
       const seconds = local / 1000
       const at = clock.instant({
         year,

@@ -71,6 +71,7 @@ function optionsOf(now: { readonly current: TracePlotProps }): uPlot.Options {
   const axis = (): Pick<uPlot.Axis, 'font'> => ({ font: `12px ${now.current.palette.font}` })
   const ticks = (plot: uPlot): ReturnType<typeof ticksOf> =>
     ticksOf(now.current.view, now.current.clock, Math.max(2, Math.floor((plot.width - gutter) / 76)))
+  let drawn: ReturnType<typeof ticksOf> = []
   return {
     width,
     height,
@@ -90,8 +91,11 @@ function optionsOf(now: { readonly current: TracePlotProps }): uPlot.Options {
         stroke: () => now.current.palette.soft,
         grid: { stroke: () => now.current.palette.line, width: 1 },
         ticks: { show: false },
-        splits: (plot) => ticks(plot).map((tick) => tick.at),
-        values: (plot) => ticks(plot).map((tick) => (fits(plot, tick.at) ? tick.text : '')),
+        splits: (plot) => {
+          drawn = ticks(plot)
+          return drawn.map((tick) => tick.at)
+        },
+        values: (plot) => drawn.map((tick) => (fits(plot, tick.at) ? tick.text : '')),
       },
       {
         ...axis(),
