@@ -3,7 +3,15 @@ export { binomialCdf, binomialPmf, binomialUpperTail } from './binomial.ts'
 export { chiSquaredCdf, chiSquaredUpperTail } from './chi-squared.ts'
 export { binomialTest, clopperPearson, type Proportion } from './clopper-pearson.ts'
 export type { ConditionalOdds } from './conditional-odds.ts'
+export {
+  type CircularShiftTest,
+  type CorrelationKind,
+  circularShiftTest,
+  laggedCorrelation,
+  meanRanks,
+} from './correlation.ts'
 export type { Design } from './design.ts'
+export { type EventCoincidence, eventCoincidence } from './event-coincidence.ts'
 export type { ExactPValues } from './exact-test.ts'
 export { fisherExact, type Table } from './fisher-exact.ts'
 export {
@@ -23,9 +31,11 @@ export { hashText } from './hash-text.ts'
 export { hodgesLehmann, hodgesLehmannShift } from './hodges-lehmann.ts'
 export { holm } from './holm.ts'
 export { type HuberFit, type HuberOptions, huberRegression } from './huber-regression.ts'
+export { type Kuiper, kuiper } from './kuiper.ts'
 export { type LeastSquares, leastSquares } from './least-squares.ts'
 export { logChoose } from './log-choose.ts'
 export { logGamma } from './log-gamma.ts'
+export { type LombScargle, lombScargle, lombScargleFalseAlarm } from './lomb-scargle.ts'
 export { MAD_TO_SIGMA, mad } from './mad.ts'
 export { type MannKendall, mannKendall } from './mann-kendall.ts'
 export {
@@ -38,6 +48,7 @@ export {
   mantelHaenszelRates,
   type RateStratum,
 } from './mantel-haenszel.ts'
+export { type MeanDirection, meanDirection } from './mean-direction.ts'
 export { median, medianSorted } from './median.ts'
 export { type Nnls, nnls } from './nnls.ts'
 export { poissonCdf, poissonUpperTail } from './poisson-cdf.ts'
@@ -47,6 +58,9 @@ export { type PoissonRateRatio, poissonRateRatio } from './poisson-rate-ratio.ts
 export { type Qr, qr } from './qr.ts'
 export { type QuantileType, quantile, quantileSorted } from './quantile.ts'
 export { type Random, seededRandom } from './random.ts'
+export { type RaoSpacing, raoSpacing } from './rao-spacing.ts'
+export { type DirectedRayleigh, type Rayleigh, rayleigh, rayleighDirected } from './rayleigh.ts'
 export { ruleOfThree } from './rule-of-three.ts'
 export { type TheilSen, theilSen } from './theil-sen.ts'
+export { type VonMises, vonMises, vonMisesKappa } from './von-mises.ts'
 export { weightedQuantile, weightedQuantiles } from './weighted-quantile.ts'

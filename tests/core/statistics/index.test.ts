@@ -5,11 +5,13 @@ import * as statistics from '../../../core/statistics/index.ts'
 it('exports exactly these names', () => {
   expect(Object.keys(statistics).sort()).toEqual(
     `JEFFREYS MAD_TO_SIGMA benjaminiHochberg binomialCdf binomialPmf binomialTest binomialUpperTail breslowDay
-    chiSquaredCdf chiSquaredUpperTail clopperPearson fisherExact gammaPoisson gammaQuantile gammaRegularised
-    hashText hodgesLehmann hodgesLehmannShift holm huberRegression leastSquares logChoose logEvidence logGamma
-    logPoissonPmf mad mannKendall mantelHaenszel mantelHaenszelExact mantelHaenszelRates median medianSorted nnls
-    noEventProbability poissonCdf poissonPmf poissonRate poissonRateRatio poissonRateTest poissonUpperTail
-    predictiveCdf predictivePmf qr quantile quantileSorted quietExposure rateQuantile ruleOfThree seededRandom
-    theilSen weightedQuantile weightedQuantiles`.split(/\s+/),
+    chiSquaredCdf chiSquaredUpperTail circularShiftTest clopperPearson eventCoincidence fisherExact gammaPoisson
+    gammaQuantile gammaRegularised hashText hodgesLehmann hodgesLehmannShift holm huberRegression kuiper
+    laggedCorrelation leastSquares logChoose logEvidence logGamma logPoissonPmf lombScargle lombScargleFalseAlarm
+    mad mannKendall mantelHaenszel mantelHaenszelExact mantelHaenszelRates meanDirection meanRanks median
+    medianSorted nnls noEventProbability poissonCdf poissonPmf poissonRate poissonRateRatio poissonRateTest
+    poissonUpperTail predictiveCdf predictivePmf qr quantile quantileSorted quietExposure raoSpacing rateQuantile
+    rayleigh rayleighDirected ruleOfThree seededRandom theilSen vonMises vonMisesKappa weightedQuantile
+    weightedQuantiles`.split(/\s+/),
   )
 })
