@@ -11,7 +11,7 @@ export interface Fall extends DeadRun {
 }
 
 /** A fall narrower than this in the log is an instant, wider ones stay an interval, ms. */
-const INSTANT_WITHIN = 120_000
+export const INSTANT_WITHIN = 120_000
 /** How long a log must read nothing before it says that the supply is gone, ms. */
 const STAYS = 120_000
 const STAYS_DENSE = 30_000

@@ -1,7 +1,7 @@
 import { writeInstant } from '../contract/primitives.ts'
 import type { Trip } from '../contract/records.ts'
 import type { Kept } from './evidence.ts'
-import { type Fall, instantOf } from './falls.ts'
+import { type Fall, instantOf, stays } from './falls.ts'
 import { fallNear, fallWithin, moved, narrowed } from './match-falls.ts'
 import type { Series } from './series.ts'
 import { clip, type Spans, spansOf } from './spans.ts'
@@ -29,6 +29,8 @@ export interface OutageInput {
   readonly nextSign: (t: number, until: number) => number
   /** Last sign of supply at or before `t` and after `after`, where the log is silent from there to `t`; else null. */
   readonly silentSince: (after: number, t: number) => number | null
+  /** First reading after `after` from which the leakage log is dead up to `t`, when it was not seen to fall; else null. */
+  readonly deadBy: (after: number, t: number) => number | null
   readonly running: readonly Series[]
 }
 
@@ -37,6 +39,8 @@ export interface Outages {
   readonly trips: readonly TimelineTrip[]
   /** Time without supply through trips and falls, within [from, to). */
   readonly spans: Spans
+  /** Falls that a written trip explains. */
+  readonly taken: ReadonlySet<Fall>
   readonly notes: readonly string[]
 }
 
@@ -54,7 +58,8 @@ interface Event {
 export function outagesOf(input: OutageInput): Outages {
   const notes: string[] = []
   const records = [...input.trips].sort((a, b) => byTime(writtenTrip(a), writtenTrip(b)))
-  const written = records.map((trip) => eventOf(trip, input, notes)).sort(byStart)
+  const matched = new Map<Fall, TimelineTrip>()
+  const written = records.map((trip) => eventOf(trip, input, matched, notes)).sort(byStart)
   const events = merged(written, notes)
   const assumed: Event[] = []
   for (const [i, event] of events.entries()) {
@@ -66,7 +71,13 @@ export function outagesOf(input: OutageInput): Outages {
         : follower.trip.from > event.start
           ? follower.trip.from
           : follower.start
-    if (event.endKnown) continue
+    if (event.endKnown) {
+      // Closed and open again before the log saw a level: then the written time is the more exact one.
+      const { restoredAt } = event.trip
+      if (follower !== undefined && follower.start < event.end && restoredAt !== null)
+        event.end = Math.max(event.start, Math.min(event.end, restoredAt))
+      continue
+    }
     if (!Number.isFinite(event.end)) event.end = Math.min(next, input.to)
     else {
       event.end = Math.min(event.end, next)
@@ -99,6 +110,7 @@ export function outagesOf(input: OutageInput): Outages {
   return {
     trips: [...events.map((e) => e.trip), ...proposed].sort(byTime),
     spans: clip(spansOf(pairs), input.from, input.to),
+    taken,
     notes,
   }
 }
@@ -122,16 +134,19 @@ export function writtenTrip(trip: Kept<Trip>): TimelineTrip {
   }
 }
 
-function eventOf(record: Kept<Trip>, input: OutageInput, notes: string[]): Event {
+function eventOf(record: Kept<Trip>, input: OutageInput, matched: Map<Fall, TimelineTrip>, notes: string[]): Event {
   const plain = writtenTrip(record)
-  const fall = record.at === undefined ? fallWithin(input.falls, plain) : fallNear(input.falls, plain)
-  const trip =
-    record.at === undefined
-      ? narrowed(plain, fall, input.silentSince(plain.from, plain.to), input.running, notes)
-      : moved(plain, fall, input.running, notes)
+  const free = input.falls.filter((f) => {
+    const earlier = matched.get(f)
+    return stays(f) && (earlier === undefined || !closedBetween(earlier, plain))
+  })
+  const fall = record.at === undefined ? fallWithin(free, plain) : fallNear(free, plain)
+  if (fall !== undefined) matched.set(fall, plain)
+  const trip = record.at === undefined ? narrowed(plain, fall, input, notes) : moved(plain, fall, input.running, notes)
   const start = trip.to
-  if (fall?.back != null && fall.back > start) return { trip, start, end: fall.back, endKnown: true, falls: [fall] }
   const falls = fall === undefined ? [] : [fall]
+  const back = (fall ?? input.falls.find((f) => stays(f) && f.from <= start && start < (f.back ?? start)))?.back
+  if (back != null && back > start) return { trip, start, end: back, endKnown: true, falls }
   if (trip.restoredAt !== null) return { trip, start, end: Math.max(start, trip.restoredAt), endKnown: true, falls }
   // Seen dead and never seen alive again: open until something says otherwise.
   const limit = fall === undefined ? start + ASSUMED_OUTAGE : Number.POSITIVE_INFINITY
@@ -168,7 +183,14 @@ function merged(events: readonly Event[], notes: string[]): Event[] {
   return out
 }
 
+/** Whether somebody wrote that the device was closed again after one trip and before the other. */
+function closedBetween(a: TimelineTrip, b: TimelineTrip): boolean {
+  if (a.restoredAt === null) return false
+  return b.from === b.to ? a.restoredAt <= b.to && a.from < b.to : a.restoredAt < b.to
+}
+
 function sameOutage(a: Event, b: Event): boolean {
+  if (closedBetween(a.trip, b.trip)) return false
   if (b.falls.some((fall) => a.falls.includes(fall)) || b.start === a.start) return true
   if (!a.endKnown) return false
   if (b.start < a.end) return true

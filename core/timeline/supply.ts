@@ -52,7 +52,8 @@ export function supplyOf({ evidence, rcd, series, leakage }: SupplyInput): Suppl
   const runs = leakage === null || level === null ? [] : deadRuns(leakage, level)
   const written = evidence.trips.filter((trip) => trip.rcd === rcd.ref)
 
-  const explains = switchingThatExplains(evidence, rcd, running, runs, usualInterval(leakage ?? voltage ?? NONE))
+  const interval = usualInterval(leakage ?? voltage ?? NONE)
+  const explains = switchingThatExplains(evidence, rcd, running, runs, interval)
   const falls: Fall[] = []
   const limit = leakage === null ? 0 : gapLimit(leakage) || 0
   for (const run of runs) falls.push({ ...run, log: 'leakage', seen: seen(run, limit), explained: explains(run) })
@@ -71,7 +72,7 @@ export function supplyOf({ evidence, rcd, series, leakage }: SupplyInput): Suppl
     )
   const supplied = memo((fall: Fall): boolean => {
     const after = fall.from + LOGGER_SLACK
-    const until = fall.back ?? to
+    const until = (fall.back ?? to) - Math.max(LOGGER_SLACK, 2 * (interval || 0))
     return (
       firstAtLeast(voltage, half, after, until) < until ||
       running.some((s) => firstAtLeast(s, 0.5, after, until) < until) ||
@@ -94,6 +95,7 @@ export function supplyOf({ evidence, rcd, series, leakage }: SupplyInput): Suppl
     running,
     nextSign,
     silentSince: (after, t) => silentSince(leakage, level, limit, after, t),
+    deadBy: (after, t) => deadBy(leakage, runs, after, t),
     dead: (fall) => gone(fall) && !supplied(fall),
     proposable: (fall) => {
       if (!gone(fall) || fall.lastLive === null || !fall.seen || fall.back === null || supplied(fall)) return false
@@ -108,7 +110,7 @@ export function supplyOf({ evidence, rcd, series, leakage }: SupplyInput): Suppl
       `Several devices lose their supply together at ${shared.slice(0, 3).map(writeInstant).join(', ')}: taken as an outage of the supply, not as trips.`,
     )
 
-  const misread = falls.filter((fall) => gone(fall) && supplied(fall))
+  const misread = falls.filter((fall) => gone(fall) && supplied(fall) && !outages.taken.has(fall))
   const tail = misread.find((fall) => fall.back === null)
   if (misread.length > 0)
     notes.push(
@@ -225,6 +227,16 @@ function silentSince(
   const next = i + 1
   const goesOn = next < leakage.t.length && leakage.t[next]! - leakage.t[i]! <= limit && leakage.v[next]! >= level.alive
   return goesOn ? null : leakage.t[i]!
+}
+
+/** First reading after `after` when it lies in a stretch of nothing that goes on up to about `t`; else null. */
+function deadBy(leakage: Series | null, runs: readonly DeadRun[], after: number, t: number): number | null {
+  if (leakage === null) return null
+  const run = runs.find(
+    (r) => stays(r) && r.from <= after && (r.back === null || r.back > t - HAND_SLACK) && r.lastDead > after,
+  )
+  const i = lowerBound(leakage.t, after + 1)
+  return run === undefined || i >= leakage.t.length || leakage.t[i]! >= t ? null : leakage.t[i]!
 }
 
 function firstAtLeast(series: Series | null, value: number, from: number, until: number): number {

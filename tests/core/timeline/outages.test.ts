@@ -124,6 +124,32 @@ describe('trips in the log', () => {
     expect(timeline.things[1]!.changes).toEqual([{ at: T0 + H, on: true }])
   })
 
+  it('keeps a device that opens again before the log saw a level as two trips', () => {
+    // Closed at 06:00:20, open again at 06:00:40: at one reading a minute the log never sees it closed.
+    const series = { 'tails-a': logged(levelWithout(9, [2 * H, 9 * H])) }
+    const again = T0 + 6 * H + 40 * S
+    const trips = [
+      { id: 'a', rcd: 'A', after: T0 + H, before: T0 + 6 * H, restoredAt: T0 + 6 * H + 20 * S },
+      { id: 'b', rcd: 'A', at: again, restoredAt: T0 + 9 * H },
+    ]
+    const timeline = buildTimeline(evidenceOf({ series, trips }))
+    expect(timeline.trips.map((t) => [t.id, t.from - T0])).toEqual([
+      ['a', 2 * H],
+      ['b', again - T0],
+    ])
+    expect([...timeline.energised].map((t) => t - T0)).toEqual([0, 2 * H, 6 * H + 20 * S, 6 * H + 40 * S, 9 * H, D])
+  })
+
+  it('narrows an interval to its beginning when the log is dead from there on', () => {
+    const series = { 'tails-a': logged(levelWithout(9, [2 * H, 9 * H])) }
+    const trips = [
+      { id: 'a', rcd: 'A', at: T0 + 2 * H, restoredAt: T0 + 3 * H + 20 * S },
+      { id: 'b', rcd: 'A', after: T0 + 3 * H + 20 * S, before: T0 + 8.99 * H, restoredAt: T0 + 9 * H },
+    ]
+    const timeline = buildTimeline(evidenceOf({ series, trips }))
+    expect(timeline.trips[1]).toMatchObject({ id: 'b', from: T0 + 3 * H + M, to: T0 + 3 * H + M, narrowed: true })
+  })
+
   it('moves a written time to the fall a few minutes away', () => {
     const series = { 'tails-a': logged(levelWithout(9, dead), 10 * S) }
     const timeline = buildTimeline(evidenceOf({ series, trips: [{ ...trip, at: T0 + 2 * H + 3 * M }] }))
