@@ -1,34 +1,20 @@
 import type { BudgetLine, Grade, Headroom, Reason, Role, Suspect, TripFinding } from '../contract/findings.ts'
-import { totalMs, union } from '../timeline/spans.ts'
+import { spansOf, totalMs, union } from '../timeline/spans.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
 import { type Candidate, type ExposureWindow, type LineUp, lineUp, type Standing } from './line-up.ts'
+import { type LogView, logView } from './log-view.ts'
 import { type CauseKind, courseRatio } from './marks.ts'
 import { type Preference, preferences } from './preference.ts'
+import { loadCurrentOdds, ODDS, rainOdds, standingOdds, thingOdds } from './prior-odds.ts'
 import { reasonsOf } from './reasons.ts'
 import type { RunProfile } from './run-profiles.ts'
 import { clockWindows, periodWindows } from './windows/clock-windows.ts'
 import { levelWindows } from './windows/level-windows.ts'
 import { sunWindows } from './windows/sun-windows.ts'
 import { thingWindows } from './windows/thing-windows.ts'
-import { type Frame, HOUR_MS, MINUTE_MS, marked } from './windows/trip-share.ts'
-import { loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
+import { type Frame, HOUR_MS, MINUTE_MS, marked, windowOf } from './windows/trip-share.ts'
+import { dryings, loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
 import { nameOf, rounded } from './words.ts'
-
-/** Prior odds of being a cause, before any reading: judgement from the mechanisms of domain.md, no source. */
-const ODDS = {
-  load: 0.08,
-  circuit: 0.05,
-  rain: 0.1,
-  temperature: 0.03,
-  clock: 0.06,
-  period: 0.02,
-  sun: 0.04,
-  'load-current': 0.05,
-  standing: 0.08,
-  device: 0.03,
-  supply: 0.05,
-  unlisted: 0.06,
-} as const
 
 /** A trip soon after the device was closed again belongs to the episode before: the same fault, still there. */
 const EPISODE_MS = 15 * MINUTE_MS
@@ -92,53 +78,70 @@ function episodes(timeline: Timeline): { kept: { from: number; to: number }[]; f
 }
 
 function candidatesOf(frame: Frame, courses: readonly TripFinding['course'][], measured: Measured): Candidate[] {
+  const { timeline } = frame
+  const log = logView(timeline, measured.budget, measured.profiles, measured.headroom)
   const marks = (kind: CauseKind): Float64Array => Float64Array.from(courses, (course) => courseRatio(kind, course))
   const list: Candidate[] = []
   const add = (of: string, odds: number, kind: CauseKind, windows: readonly ExposureWindow[]): void => {
-    if (windows.length > 0) list.push({ of, odds, windows: marked(windows, marks(kind)) })
+    if (windows.length > 0 && odds > 0) list.push({ of, odds, windows: marked(windows, marks(kind)) })
   }
-  for (const thing of frame.timeline.things) {
-    const odds = ODDS[thing.kind] * visibleLeak(frame.timeline, thing, measured)
-    add(thing.of, odds, 'load', thingWindows(frame, thing))
+  const tooSensitive = isTooSensitive(timeline, measured)
+  const level = levelWindows(frame, log)
+  const byThing = new Map(timeline.things.map((thing) => [thing.of, thingWindows(frame, thing)]))
+  const isJudged = (of: string): boolean => (byThing.get(of)?.length ?? 0) > 0
+  for (const thing of timeline.things) {
+    const odds = thingOdds(timeline, thing, log, isJudged) * (tooSensitive ? 0.1 : 1)
+    add(thing.of, odds, 'load', byThing.get(thing.of) ?? [])
   }
-  add('rain', ODDS.rain, 'weather', rainWindows(frame))
+  const laws = dryings(frame, log.unexplained?.remainder ?? null)
+  const wet = rainWindows(frame, laws)
+  const rain = rainOdds(timeline, log, laws)
+  add('rain', rain, 'weather', wet)
   add('temperature', ODDS.temperature, 'weather', temperatureWindows(frame))
   add('clock', ODDS.clock, 'schedule', clockWindows(frame))
   add('period', ODDS.period, 'schedule', periodWindows(frame))
   add('sun', ODDS.sun, 'schedule', sunWindows(frame))
-  add('load-current', ODDS['load-current'], 'load-current', loadCurrentWindows(frame))
-  const always = (key: string, words: string): ExposureWindow[] => {
-    const inside = new Float64Array(frame.trips.length).fill(1)
-    return [{ key, words, prior: 1, hours: frame.hours, inside, weights: inside }]
-  }
-  const level = levelWindows(frame)
-  const tooSensitive = isTooSensitive(frame.timeline, measured.headroom)
-  if (tooSensitive) add('device', ODDS.device * 30, 'device', level.length > 0 ? level : always('any', 'at any time'))
-  else add('standing', ODDS.standing, 'standing', level)
-  add('supply', ODDS.supply, 'supply', always('any', 'together with others'))
-  add('unlisted', ODDS.unlisted, 'unlisted', always('any', 'at any time'))
+  add('load-current', loadCurrentOdds(log), 'load-current', loadCurrentWindows(frame))
+  if (tooSensitive) add('device', 3, 'device', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
+  else add('standing', standingOdds(log, measured.headroom), 'standing', level)
+  add('supply', ODDS.supply, 'supply', always(frame, 'together with others', 1))
+  const seen = unlistedWindows(frame, log, rain > 2 * ODDS.rain)
+  add('unlisted', ODDS.unlisted * (seen.length > 0 ? 4 : 1), 'unlisted', [
+    ...seen,
+    ...always(frame, 'at any time', seen.length > 0 ? 0.5 : 1),
+  ])
   return list
 }
 
-/** A ramp test below 0.5 IΔn, the current at which the standards forbid a trip (IEC 61008-1, IEC 61009-1, from memory). */
-function isTooSensitive(timeline: Timeline, headroom: Headroom): boolean {
-  return headroom.tripMa.basis === 'ramp-tests' && headroom.tripMa.high < 0.5 * timeline.rcd.ratedMa
+function always(frame: Frame, words: string, prior: number): ExposureWindow[] {
+  const inside = new Float64Array(frame.trips.length).fill(1)
+  return [{ key: 'any', words, prior, hours: frame.hours, inside, weights: inside }]
+}
+
+function scaled(windows: readonly ExposureWindow[], by: number): ExposureWindow[] {
+  return windows.map((w) => ({ ...w, prior: w.prior * by }))
+}
+
+/** Excursions that no named load accounts for or starts, seen apart from trips, and not the rain's. */
+function unlistedWindows(frame: Frame, log: LogView, rainLifts: boolean): ExposureWindow[] {
+  const { unexplained } = log
+  if (unexplained === null || unexplained.apart < 3 || unexplained.follows !== null || rainLifts) return []
+  const all = spansOf([[frame.timeline.from, frame.timeline.to]])
+  const words = 'while the leakage stood far above what the listed loads explain'
+  const window = windowOf(frame, 'unexplained', words, 0.5, unexplained.excursions, all)
+  return window === null ? [] : [window]
 }
 
 /**
- * How much the log changes the odds of a thing before any trip is looked at: one whose runs lift the level towards
- * the trip current is a likelier cause than one whose runs leave no trace. Mild, for a fault may show only at trips.
+ * A device that opens below 0.5 IΔn, the current at which the standards forbid a trip (IEC 61008-1, IEC 61009-1, from
+ * memory): by a ramp test, or because it opened at least three times after a visible rise, and the leakage never came
+ * near that current.
  */
-function visibleLeak(timeline: Timeline, thing: Thing, measured: Measured): number {
-  const profile = measured.profiles.get(thing.of)
-  const { standingMa, tripMa } = measured.headroom
-  if (profile === undefined || profile.runs < 3 || profile.riseMa === null || standingMa === null) return 1
-  const room = Math.max(0.1 * timeline.rcd.ratedMa, tripMa.value - standingMa.p50)
-  const reach = profile.riseMa / room
-  if (reach >= 0.6) return 3
-  if (reach >= 0.3) return 1.8
-  if (reach >= 0.1) return 1
-  return 0.5
+function isTooSensitive(timeline: Timeline, { headroom, trips }: Measured): boolean {
+  const half = 0.5 * timeline.rcd.ratedMa
+  if (headroom.tripMa.basis === 'ramp-tests') return headroom.tripMa.high < half
+  const risen = trips.filter((t) => t.levelMa !== null && (t.course === 'step' || t.course === 'creep'))
+  return risen.length >= 3 && (headroom.standingMa?.max ?? half) < 0.9 * half
 }
 
 function judgedSuspect(

@@ -1,34 +1,102 @@
 import { quantile } from '../../statistics/quantile.ts'
-import { lowerBound, type Series, usualInterval } from '../../timeline/series.ts'
-import { type Spans, spansOf } from '../../timeline/spans.ts'
+import { lowerBound, type Series } from '../../timeline/series.ts'
 import type { ExposureWindow } from '../line-up.ts'
+import { heldAbove, thinned } from './held.ts'
 import { type Frame, HOUR_MS, normalised, windowOf } from './trip-share.ts'
 
-/** Half-lives of drying that are tried, h. */
-const HALF_LIVES = [1.5, 4, 10, 24] as const
-const LAGS = [0, 2] as const
-/** Millimetres of antecedent rain above which it counts as wet. */
-const WET_MM = [0.3, 1, 3] as const
+/** Half-lives of drying and lags that are tried, h. */
+const HALF_LIVES = [1.5, 4, 9, 20] as const
+const LAGS = [0, 1.5, 4] as const
+/** Shares of the time that may count as wet, and the least rain that makes wet. */
+const WET_SHARES = [0.02, 0.05, 0.1, 0.2, 0.35] as const
+const LEAST_MM = 0.2
+
+/** A drying law with the weight that the leakage log gives it. */
+export interface Drying {
+  readonly halfLife: number
+  readonly lag: number
+  readonly wetness: Series
+  /** Correlation of wetness, `lag` hours ago, with the leakage; 0 without a log. */
+  readonly correlation: number
+}
 
 /**
- * Wet hours: antecedent precipitation (Kohler & Linsley 1951), rain that fades with a half-life, above a threshold,
- * with and without a lag. Half-lives, lags and thresholds are averaged over, not picked.
+ * Antecedent precipitation (Kohler & Linsley 1951) under every half-life and lag that is tried, each correlated with
+ * the hourly leakage that no named load accounts for. Empty without a rain channel.
  */
-export function rainWindows(frame: Frame): ExposureWindow[] {
+export function dryings(frame: Frame, remainder: Series | null): Drying[] {
   const { rain } = frame.timeline
   if (rain === null || rain.t.length < 3) return []
-  const windows: (ExposureWindow | null)[] = []
+  const list: Drying[] = []
   for (const halfLife of HALF_LIVES) {
     const wetness = antecedent(rain, halfLife)
     for (const lag of LAGS) {
-      for (const mm of WET_MM) {
-        const held = heldAbove(wetness, mm, true, lag * HOUR_MS)
-        const words = `while it was wet (over ${mm} mm of rain still standing, drying by half in ${halfLife} h${lag > 0 ? `, ${lag} h late` : ''})`
-        windows.push(windowOf(frame, `wet-${halfLife}-${lag}-${mm}`, words, 1, held.inside, held.known))
-      }
+      list.push({
+        halfLife,
+        lag,
+        wetness,
+        correlation: remainder === null ? 0 : correlationAt(wetness, remainder, lag * HOUR_MS),
+      })
+    }
+  }
+  return list
+}
+
+/**
+ * Wet hours: rain still standing above a threshold, one for each share of the time that may count as wet. Drying laws
+ * are averaged over, those that fit the leakage weighing more.
+ */
+export function rainWindows(frame: Frame, laws: readonly Drying[]): ExposureWindow[] {
+  const windows: (ExposureWindow | null)[] = []
+  for (const { halfLife, lag, wetness, correlation } of laws) {
+    const sample = thinned(wetness.v, 5_000)
+    const seen = new Set<number>()
+    for (const share of WET_SHARES) {
+      const mm = Math.max(LEAST_MM, Number(quantile(sample, 1 - share).toPrecision(2)))
+      if (seen.has(mm)) continue
+      seen.add(mm)
+      const held = heldAbove(wetness, mm, true, lag * HOUR_MS)
+      const words = `while it was wet (over ${mm} mm of rain still standing, drying by half in ${halfLife} h${lag > 0 ? `, felt ${lag} h late` : ''})`
+      windows.push(
+        windowOf(
+          frame,
+          `wet-${halfLife}-${lag}-${mm}`,
+          words,
+          Math.max(0.1, correlation) ** 4,
+          held.inside,
+          held.known,
+        ),
+      )
     }
   }
   return normalised(windows)
+}
+
+/** Pearson correlation of a level with a wetness `lag` ms earlier, at the wetness's own times. */
+function correlationAt(wetness: Series, level: Series, lag: number): number {
+  const xs: number[] = []
+  const ys: number[] = []
+  for (let i = 0; i < wetness.t.length; i++) {
+    const from = wetness.t[i]! + lag
+    const a = lowerBound(level.t, from)
+    const b = lowerBound(level.t, from + HOUR_MS)
+    if (b - a < 5) continue
+    xs.push(wetness.v[i]!)
+    ys.push(quantile(thinned(level.v.subarray(a, b), 61), 0.5))
+  }
+  return xs.length < 12 ? 0 : pearson(xs, ys)
+}
+
+function pearson(xs: readonly number[], ys: readonly number[]): number {
+  const mean = (v: readonly number[]): number => v.reduce((a, b) => a + b, 0) / v.length
+  const [mx, my] = [mean(xs), mean(ys)]
+  let [xy, xx, yy] = [0, 0, 0]
+  for (let i = 0; i < xs.length; i++) {
+    xy += (xs[i]! - mx) * (ys[i]! - my)
+    xx += (xs[i]! - mx) ** 2
+    yy += (ys[i]! - my) ** 2
+  }
+  return xx > 0 && yy > 0 ? xy / Math.sqrt(xx * yy) : 0
 }
 
 /** Cold and warm hours, by quantiles of the span's own temperatures. */
@@ -77,47 +145,4 @@ export function antecedent(rain: Series, halfLife: number): Series {
     v[i] = standing
   }
   return { t: rain.t, v }
-}
-
-/**
- * Where a sampled quantity lies above (or below) a value; each reading holds until the next, at most three usual
- * intervals. `shift` moves both results later, ms.
- */
-export function heldAbove(
-  series: Series,
-  value: number,
-  above: boolean,
-  shift: number,
-): { inside: Spans; known: Spans } {
-  const hold = 3 * (usualInterval(series) || 0)
-  const inside: [number, number][] = []
-  const known: [number, number][] = []
-  const extend = (list: [number, number][], from: number, to: number): void => {
-    const last = list.at(-1)
-    if (last !== undefined && from <= last[1]) last[1] = to
-    else list.push([from, to])
-  }
-  for (let i = 0; i < series.t.length; i++) {
-    const from = series.t[i]! + shift
-    const next = i + 1 < series.t.length ? series.t[i + 1]! + shift : from + hold / 3
-    const to = Math.min(next, from + hold)
-    if (to <= from) continue
-    extend(known, from, to)
-    if (above ? series.v[i]! > value : series.v[i]! < value) extend(inside, from, to)
-  }
-  return { inside: spansOf(inside), known: spansOf(known) }
-}
-
-/** At most `n` values spread evenly. */
-export function thinned(values: Float64Array, n: number): Float64Array {
-  if (values.length <= n) return values
-  return Float64Array.from({ length: n }, (_, k) => values[Math.floor((k * (values.length - 1)) / (n - 1))]!)
-}
-
-/** Median of the readings in [from, to); NaN without any. At most 101 readings are looked at. */
-export function medianBetween(series: Series, from: number, to: number): number {
-  const a = lowerBound(series.t, from)
-  const b = lowerBound(series.t, to)
-  if (b <= a) return Number.NaN
-  return quantile(thinned(series.v.subarray(a, b), 101), 0.5)
 }

@@ -1,0 +1,76 @@
+import type { BudgetLine, Headroom } from '../contract/findings.ts'
+import { quantile } from '../statistics/quantile.ts'
+import type { Series } from '../timeline/series.ts'
+import { sliceSeries } from '../timeline/series.ts'
+import type { Timeline } from '../timeline/timeline.ts'
+import { followsCurrent } from './follows-current.ts'
+import { minuteLevels } from './minute-levels.ts'
+import type { RunProfile } from './run-profiles.ts'
+import { type Unexplained, unexplained } from './unexplained.ts'
+import { thinned } from './windows/held.ts'
+
+/** What the leakage log says that bears on every suspect; computed once. Nulls without a log. */
+export interface LogView {
+  /** Minute means of energised time. */
+  readonly minutes: Series | null
+  readonly tripMa: number
+  /** Median standing leakage over the trip current. */
+  readonly usualShare: number | null
+  /** By thing: how far its runs lift the level, over the trip current; only where the log could see it. */
+  readonly liftShare: ReadonlyMap<string, number>
+  readonly unexplained: Unexplained | null
+  /** Whether leakage follows the group's load current whichever load carries it. */
+  readonly followsCurrent: boolean | null
+}
+
+/** Runs or switchings that a lift must rest on. */
+const LEAST_RUNS = 3
+
+/** Reads the log once for the line-up. Linear in readings. */
+export function logView(
+  timeline: Timeline,
+  budget: readonly BudgetLine[],
+  profiles: ReadonlyMap<string, RunProfile>,
+  headroom: Headroom,
+): LogView {
+  const tripMa = headroom.tripMa.value
+  const liftShare = new Map<string, number>()
+  for (const thing of timeline.things) {
+    const profile = profiles.get(thing.of)
+    const line = budget.find((b) => b.of === thing.of)
+    const byRuns = profile !== undefined && profile.runs >= LEAST_RUNS ? profile.riseMa : null
+    const bySwitching = line?.basis === 'switching' && line.switchings >= LEAST_RUNS ? line.ma : null
+    if (byRuns !== null || bySwitching !== null) {
+      liftShare.set(thing.of, Math.max(byRuns ?? 0, bySwitching ?? 0) / tripMa)
+    }
+  }
+  if (timeline.leakage === null || timeline.leakage.t.length < 100) {
+    return { minutes: null, tripMa, usualShare: null, liftShare, unexplained: null, followsCurrent: null }
+  }
+  const minutes = energisedMinutes(timeline, timeline.leakage)
+  return {
+    minutes,
+    tripMa,
+    usualShare: minutes.t.length === 0 ? null : quantile(thinned(minutes.v, 5_000), 0.5) / tripMa,
+    liftShare,
+    unexplained: minutes.t.length < 60 ? null : unexplained(timeline, minutes, budget, tripMa),
+    followsCurrent: followsCurrent(timeline, minutes, budget),
+  }
+}
+
+function energisedMinutes(timeline: Timeline, leakage: Series): Series {
+  const { energised } = timeline
+  const parts: Series[] = []
+  for (let i = 0; i < energised.length; i += 2)
+    parts.push(minuteLevels(sliceSeries(leakage, energised[i]!, energised[i + 1]!)))
+  const n = parts.reduce((sum, p) => sum + p.t.length, 0)
+  const t = new Float64Array(n)
+  const v = new Float64Array(n)
+  let at = 0
+  for (const part of parts) {
+    t.set(part.t, at)
+    v.set(part.v, at)
+    at += part.t.length
+  }
+  return { t, v }
+}

@@ -1,0 +1,99 @@
+import type { Headroom } from '../contract/findings.ts'
+import { intersect, totalMs } from '../timeline/spans.ts'
+import type { Thing, Timeline } from '../timeline/timeline.ts'
+import type { LogView } from './log-view.ts'
+import { heldAbove } from './windows/held.ts'
+import { HOUR_MS } from './windows/trip-share.ts'
+import type { Drying } from './windows/weather-windows.ts'
+
+/** Prior odds of being a cause, before anything was read: judgement from the mechanisms of domain.md, no source. */
+export const ODDS = {
+  load: 0.08,
+  circuit: 0.05,
+  rain: 0.1,
+  temperature: 0.02,
+  clock: 0.06,
+  period: 0.04,
+  sun: 0.04,
+  'load-current': 0.05,
+  standing: 0.08,
+  device: 0.03,
+  supply: 0.06,
+  unlisted: 0.06,
+} as const
+
+/** A circuit whose sheet lists no load may still feed one. */
+const LOADS_ASSUMED = 1
+
+/**
+ * Odds of a circuit or load. A circuit stands in for those of its loads that nothing can be said about. The log then
+ * weighs in: runs that lift the level far towards the trip current make a likelier cause than runs without a trace.
+ * Mildly, for a fault may show only at the trips themselves.
+ */
+export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudged: (of: string) => boolean): number {
+  let odds: number = ODDS[thing.kind]
+  if (thing.kind === 'circuit') {
+    const loads = timeline.things.filter((t) => t.kind === 'load' && t.circuit === thing.ref)
+    const silent = loads.length === 0 ? LOADS_ASSUMED : loads.filter((t) => !isJudged(t.of)).length
+    odds += silent * ODDS.load
+  }
+  return odds * liftFactor(log.liftShare.get(thing.of)) * (log.followsCurrent === true ? 0.15 : 1)
+}
+
+function liftFactor(share: number | undefined): number {
+  if (share === undefined) return 1
+  if (share >= 0.2) return 3
+  if (share >= 0.12) return 1.5
+  if (share >= 0.06) return 0.6
+  return 0.3
+}
+
+/** Many together: likely only where the usual level stands near the trip current. */
+export function standingOdds(log: LogView, headroom: Headroom): number {
+  const share = log.usualShare
+  if (share === null) return 0
+  const sure = headroom.tripMa.basis === 'limits' ? 0.5 : 1
+  const factor = share >= 0.8 ? 5 : share >= 0.65 ? 2 : share >= 0.5 ? 0.4 : 0.1
+  return ODDS.standing * factor ** sure
+}
+
+/** Rain: likelier when the log rises with it, unlikelier when the log is there and does not. */
+export function rainOdds(timeline: Timeline, log: LogView, laws: readonly Drying[]): number {
+  const lift = wetLiftShare(timeline, log, laws)
+  if (lift === null) return ODDS.rain
+  return ODDS.rain * (lift >= 0.12 ? 5 : lift >= 0.05 ? 1.5 : 0.3)
+}
+
+/** Level in the wettest tenth less that in dry hours, over the trip current, by the drying law that fits best. */
+function wetLiftShare(timeline: Timeline, log: LogView, laws: readonly Drying[]): number | null {
+  if (log.unexplained === null || laws.length === 0) return null
+  const best = laws.reduce((a, b) => (b.correlation > a.correlation ? b : a))
+  if (best.correlation < 0.2) return 0
+  const { remainder } = log.unexplained
+  const peak = best.wetness.v.reduce((a, b) => Math.max(a, b), 0)
+  if (peak <= 0) return null
+  const wet = heldAbove(best.wetness, 0.5 * peak, true, best.lag * HOUR_MS).inside
+  const dry = heldAbove(best.wetness, 0.05 * peak, false, best.lag * HOUR_MS).inside
+  const level = (spans: Float64Array): number => {
+    const here = intersect(spans, timeline.energised)
+    if (totalMs(here) === 0) return Number.NaN
+    let sum = 0
+    let n = 0
+    let k = 0
+    for (let i = 0; i < here.length; i += 2) {
+      while (k < remainder.t.length && remainder.t[k]! < here[i]!) k++
+      for (; k < remainder.t.length && remainder.t[k]! < here[i + 1]!; k++) {
+        sum += remainder.v[k]!
+        n++
+      }
+    }
+    return n === 0 ? Number.NaN : sum / n
+  }
+  const lift = level(wet) - level(dry)
+  return Number.isNaN(lift) ? null : lift / log.tripMa
+}
+
+/** Neutral–earth: decided mostly by whether leakage follows the load current whoever carries it. */
+export function loadCurrentOdds(log: LogView): number {
+  return ODDS['load-current'] * (log.followsCurrent === true ? 15 : log.followsCurrent === false ? 0.2 : 1)
+}
