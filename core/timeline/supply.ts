@@ -187,25 +187,27 @@ function switchingThatExplains(
 
 /** Whether another device of the site loses its level or its voltage about then. */
 function fallsElsewhere(evidence: Evidence, rcd: Rcd, series: ReadonlyMap<string, Series>): (t: number) => boolean {
-  let begins: Float64Array[] | null = null
+  let begins: Float64Array | null = null
   return (t) => {
-    begins ??= evidence.sheet.rcds
-      .filter((other) => other.ref !== rcd.ref)
-      .flatMap((other) => {
-        const { level } = leakageOf(
-          evidence.sheet.channels.filter((c) => c.rcd === other.ref),
-          series,
-        )
-        const usual = level === null ? null : usualLevel(level)
-        const volts = voltageOf(evidence, other.ref, series)
-        const half = (evidence.sheet.supply?.volts ?? DEFAULT_VOLTS) / 2
-        return [
-          ...(level === null || usual === null || usual.mostlyNothing ? [] : deadRuns(level, usual)),
-          ...(volts === null ? [] : deadRuns(volts, { nothing: half, alive: half })),
-        ].filter((run) => run.sharp && stays(run))
-      })
-      .map((run) => Float64Array.of(run.from))
-    return begins.some((times) => near(times, t, LOGGER_SLACK))
+    begins ??= Float64Array.from(
+      evidence.sheet.rcds
+        .filter((other) => other.ref !== rcd.ref)
+        .flatMap((other) => {
+          const { level } = leakageOf(
+            evidence.sheet.channels.filter((c) => c.rcd === other.ref),
+            series,
+          )
+          const usual = level === null ? null : usualLevel(level)
+          const volts = voltageOf(evidence, other.ref, series)
+          const half = (evidence.sheet.supply?.volts ?? DEFAULT_VOLTS) / 2
+          return [
+            ...(level === null || usual === null || usual.mostlyNothing ? [] : deadRuns(level, usual)),
+            ...(volts === null ? [] : deadRuns(volts, { nothing: half, alive: half })),
+          ].filter((run) => run.sharp && stays(run))
+        })
+        .map((run) => run.from),
+    ).sort()
+    return near(begins, t, LOGGER_SLACK)
   }
 }
 

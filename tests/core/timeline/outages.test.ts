@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest'
 import { buildTimeline } from '../../../core/timeline/build-timeline.ts'
+import { seriesOf } from '../../../core/timeline/series.ts'
 import { totalMs } from '../../../core/timeline/spans.ts'
 import { bakery, D, evidenceOf, H, hours, levelWithout, logged, M, S, T0 } from './evidence.ts'
 
@@ -166,18 +167,33 @@ describe('trips in the log', () => {
   })
 
   it.each([
-    ['a gap', logged(() => 9).t.length, {}],
-    ['a slow fall', 0, { fall: (t: number) => (t < 2 * H ? 9 : t < 3 * H ? 9 * (3 - t / H) : t < 6 * H ? 0.02 : 9) }],
-    ['a moment', 0, { fall: (t: number) => (t >= 2 * H && t < 2 * H + M ? 0.02 : 9) }],
-    ['a fall that never comes back', 0, { fall: (t: number) => (t >= 20 * H ? 0.02 : 9) }],
-    ['a level that was low anyway', 0, { fall: (t: number) => (t >= 2 * H && t < 6 * H ? 0.02 : 0.15) }],
-  ])('does not propose %s', (name, _, { fall = (): number => 9 }: { fall?: (t: number) => number }) => {
-    const whole = logged(fall)
-    const keep = name === 'a gap' ? [...whole.t.keys()].filter((i) => i < 120 || i > 300) : [...whole.t.keys()]
-    const series = {
-      'tails-a': { t: Float64Array.from(keep, (i) => whole.t[i]!), v: Float64Array.from(keep, (i) => whole.v[i]!) },
+    ['a slow fall', (t: number): number => (t < 2 * H ? 9 : t < 3 * H ? 9 * (3 - t / H) : t < 6 * H ? 0.02 : 9)],
+    ['a moment', (t: number): number => (t >= 2 * H && t < 2 * H + M ? 0.02 : 9)],
+    ['a fall that never comes back', (t: number): number => (t >= 20 * H ? 0.02 : 9)],
+    ['a level that was low anyway', (t: number): number => (t >= 2 * H && t < 6 * H ? 0.02 : 0.15)],
+  ])('does not propose %s', (_, level) => {
+    expect(buildTimeline(evidenceOf({ series: { 'tails-a': logged(level) } })).trips).toEqual([])
+  })
+
+  it('does not propose a gap, nor a fall behind one', () => {
+    const before = logged(() => 9, M, T0, T0 + 2 * H)
+    const after = logged((t) => (t < 6 * H ? 0.02 : 9), M, T0 + 5 * H)
+    const join = (a: Float64Array, b: Float64Array): number[] => [...a, ...b]
+    const series = { 'tails-a': seriesOf(join(before.t, after.t), join(before.v, after.v)) }
+    const timeline = buildTimeline(evidenceOf({ series }))
+    expect(timeline.trips).toEqual([])
+    // Dead behind the gap: no trip is claimed, but no supply is either.
+    expect(hours(timeline.energised)).toEqual([0, 5, 6, 24])
+    const silent = {
+      'tails-a': seriesOf(
+        join(
+          before.t,
+          before.t.map((t) => t + 10 * H),
+        ),
+        join(before.v, before.v),
+      ),
     }
-    expect(buildTimeline(evidenceOf({ series })).trips).toEqual([])
+    expect(hours(buildTimeline(evidenceOf({ series: silent })).energised)).toEqual([0, 24])
   })
 
   it('does not propose what switching by hand explains, and stays energised', () => {
