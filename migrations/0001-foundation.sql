@@ -40,8 +40,8 @@ CREATE TABLE channel (
   UNIQUE (site, ref)
 ) STRICT;
 
--- The resting place of readings: one packed block per channel and hour; key = channel * 2^21 + hours since the epoch.
--- The data come last, so that the summary reads without them.
+-- The resting place of readings: one block per channel and hour; key = channel * 2^21 + hours since the epoch.
+-- Its summary stands apart from the packed readings: a wide chart reads a hundredth of the file.
 CREATE TABLE block (
   key INTEGER PRIMARY KEY,
   n INTEGER NOT NULL,
@@ -53,8 +53,13 @@ CREATE TABLE block (
   t_min INTEGER NOT NULL,
   v_max ANY NOT NULL,
   t_max INTEGER NOT NULL,
-  sum ANY NOT NULL,
-  crc INTEGER NOT NULL,
+  sum ANY NOT NULL
+) STRICT;
+
+CREATE TABLE packed (
+  key INTEGER PRIMARY KEY, -- of the block
+  n INTEGER NOT NULL,
+  crc INTEGER NOT NULL, -- CRC-32 of the data
   data BLOB NOT NULL
 ) STRICT;
 

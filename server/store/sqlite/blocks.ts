@@ -9,7 +9,7 @@ export const HOUR_MS = 3_600_000
 /** Hours since the epoch stay below this until the year 2209. */
 const HOURS = 2 ** 21
 
-/** Summary of a block: what its row carries beside the packed readings. */
+/** Summary of a block: what stands beside its packed readings. */
 export interface BlockHead {
   readonly key: number
   readonly n: number
@@ -44,7 +44,9 @@ export class Blocks {
   readonly #bounds
   readonly #data
   readonly #write
+  readonly #pack
   readonly #deleteRange
+  readonly #unpackRange
 
   constructor(db: Database.Database) {
     this.#heads = db
@@ -54,17 +56,19 @@ export class Blocks {
       )
       .raw()
     this.#range = db
-      .prepare<[number, number], DataRow>('SELECT key, n, crc, data FROM block WHERE key BETWEEN ? AND ? ORDER BY key')
+      .prepare<[number, number], DataRow>('SELECT key, n, crc, data FROM packed WHERE key BETWEEN ? AND ? ORDER BY key')
       .raw()
     this.#count = db.prepare<[number, number], number>('SELECT total(n) FROM block WHERE key BETWEEN ? AND ?').pluck()
     this.#bounds = db.prepare<[number], [number, number]>('SELECT t_first, t_last FROM block WHERE key = ?').raw()
-    this.#data = db.prepare<[number], DataRow>('SELECT key, n, crc, data FROM block WHERE key = ?').raw()
+    this.#data = db.prepare<[number], DataRow>('SELECT key, n, crc, data FROM packed WHERE key = ?').raw()
     this.#write = db.prepare(
       `INSERT OR REPLACE INTO block
-       (key, n, t_first, t_last, v_first, v_last, v_min, t_min, v_max, t_max, sum, crc, data)
-       VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
+       (key, n, t_first, t_last, v_first, v_last, v_min, t_min, v_max, t_max, sum)
+       VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
     )
+    this.#pack = db.prepare('INSERT OR REPLACE INTO packed (key, n, crc, data) VALUES (?, ?, ?, ?)')
     this.#deleteRange = db.prepare<[number, number]>('DELETE FROM block WHERE key BETWEEN ? AND ?')
+    this.#unpackRange = db.prepare<[number, number]>('DELETE FROM packed WHERE key BETWEEN ? AND ?')
   }
 
   heads(low: number, high: number): BlockHead[] {
@@ -128,13 +132,13 @@ export class Blocks {
       v[max],
       t[max],
       Number.isFinite(sum) ? sum : 0,
-      crc32(data),
-      data,
     )
+    this.#pack.run(key, n, crc32(data), data)
   }
 
   deleteChannel(channel: number): void {
     this.#deleteRange.run(blockKey(channel, 0), blockKey(channel, HOURS - 1))
+    this.#unpackRange.run(blockKey(channel, 0), blockKey(channel, HOURS - 1))
   }
 }
 

@@ -183,9 +183,9 @@ describe('a damaged block', () => {
   it.each([
     [
       'a flipped bit',
-      "UPDATE block SET data = CAST(substr(data, 1, 20) || x'ff' || substr(data, 22) AS BLOB) WHERE key = ?",
+      "UPDATE packed SET data = CAST(substr(data, 1, 20) || x'ff' || substr(data, 22) AS BLOB) WHERE key = ?",
     ],
-    ['missing bytes', 'UPDATE block SET data = substr(data, 1, 30) WHERE key = ?'],
+    ['missing bytes', 'UPDATE packed SET data = substr(data, 1, 30) WHERE key = ?'],
   ])('%s is told with channel and hour; the other hours still read', async (_name, damage) => {
     const file = newFile()
     const before = await openStore(file)
@@ -218,7 +218,7 @@ describe('a damaged block', () => {
     await before.append(site, [batch(regular(40))])
     await before.close()
     const db = new Database(file)
-    db.exec('UPDATE block SET crc = crc + 1')
+    db.exec('UPDATE packed SET crc = crc + 1')
     db.close()
 
     const store = await open(file)
