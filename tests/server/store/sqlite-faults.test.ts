@@ -86,7 +86,9 @@ describe('one writing process', () => {
 
   it('is all there can be, until it ends, also by kill -9', async () => {
     const file = newFile()
-    const child = spawn(process.execPath, ['--import', 'tsx', hold, file], { stdio: ['ignore', 'pipe', 'inherit'] })
+    const child = spawn(process.execPath, ['--expose-gc', '--import', 'tsx', hold, file], {
+      stdio: ['ignore', 'pipe', 'inherit'],
+    })
     running.push(child)
     const [line] = (await once(child.stdout, 'data')) as [Buffer]
     await expect(openStore(file)).rejects.toEqual(code('busy'))
