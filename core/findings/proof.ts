@@ -3,12 +3,11 @@ import { writeInstant } from '../contract/primitives.ts'
 import { gammaPoisson, noEventProbability, predictiveCdf, quietExposure } from '../statistics/gamma-poisson.ts'
 import { ruleOfThree } from '../statistics/rule-of-three.ts'
 import { measureWithin } from '../timeline/spans.ts'
-import type { Timeline, TimelineTrip } from '../timeline/timeline.ts'
+import type { Timeline } from '../timeline/timeline.ts'
+import { episodes } from './episodes.ts'
 import { countOf, duration, figure, rounded, sentence } from './words.ts'
 
 const HOUR_MS = 3_600_000
-/** A trip so soon after closing again is the same fault still there, not news about its rate. */
-const EPISODE_MS = 15 * 60_000
 const SURE = 0.95
 
 /**
@@ -80,14 +79,4 @@ function latestRemedy(timeline: Timeline): number | null {
     if (meant && remedy.at < timeline.to && (latest === null || remedy.at > latest)) latest = remedy.at
   }
   return latest
-}
-
-function episodes(trips: readonly TimelineTrip[]): TimelineTrip[] {
-  const kept: TimelineTrip[] = []
-  let closed = Number.NEGATIVE_INFINITY
-  for (const trip of trips) {
-    if (trip.from - closed >= EPISODE_MS) kept.push(trip)
-    closed = Math.max(closed, trip.restoredAt ?? Number.NEGATIVE_INFINITY)
-  }
-  return kept
 }

@@ -121,3 +121,48 @@ describe('headroom', () => {
     )
   })
 })
+
+describe('drift', () => {
+  const wander = (seed: number, maPerDay: number) => {
+    const random = seededRandom(seed)
+    const t = Array.from({ length: 10 * 24 * 12 }, (_, i) => START + i * 5 * MINUTE)
+    let level = 0
+    const v = t.map((ms) => {
+      // Ornstein–Uhlenbeck with three hours and 0.3 mA.
+      level = level * Math.exp(-1 / 36) + random.normal(0, 0.3 * Math.sqrt(1 - Math.exp(-1 / 18)))
+      return 8 + level + (maPerDay * (ms - START)) / (24 * HOUR)
+    })
+    return timelineOf({ days: 10, leakage: seriesOf(t, v), logged: spansOf([[START, START + 10 * 24 * HOUR]]) })
+  }
+
+  it('finds a slope and covers it about nine times in ten', () => {
+    let covered = 0
+    for (let seed = 0; seed < 60; seed++) {
+      const drift = headroom(wander(seed, 0.2)).drift!
+      if (drift.low <= 0.2 && 0.2 <= drift.high) covered++
+      if (seed === 0) expect(drift.p).toBeLessThan(0.01)
+    }
+    // Binomial(60, 0.9): below 46 has a chance of 0.2 %.
+    expect(covered).toBeGreaterThanOrEqual(46)
+  })
+
+  it('rarely sees one in a level that only wanders', () => {
+    let alarms = 0
+    for (let seed = 100; seed < 160; seed++) if (headroom(wander(seed, 0)).drift!.p < 0.05) alarms++
+    // Binomial(60, 0.05): 9 or more has a chance of 0.4 %.
+    expect(alarms).toBeLessThan(9)
+  })
+
+  it('needs a day', () => {
+    const t = Array.from({ length: 20 * 60 }, (_, i) => START + i * MINUTE)
+    const short = timelineOf({
+      days: 1,
+      leakage: seriesOf(
+        t,
+        t.map(() => 8),
+      ),
+      logged: spansOf([[START, START + 20 * HOUR]]),
+    })
+    expect(headroom(short).drift).toBeNull()
+  })
+})

@@ -1,0 +1,94 @@
+import type { Pattern } from '../contract/findings.ts'
+import { seededRandom } from '../statistics/random.ts'
+import { type Spans, totalMs } from '../timeline/spans.ts'
+import type { Timeline } from '../timeline/timeline.ts'
+import { figure, rounded } from './words.ts'
+
+const HOUR_MS = 3_600_000
+const SHORTEST_HOURS = 1
+const LONGEST_HOURS = 240
+/** A period must be seen this often to be one. */
+const LEAST_TURNS = 3
+const OVERSAMPLE = 3
+const MOST_FREQUENCIES = 1_200
+const MOST_SIMULATIONS = 399
+/** Turns of angles that the simulation may cost. */
+const COST = 4_000_000
+const SPOKEN = 0.05
+
+/**
+ * Whether trips keep a period from an hour to ten days: Rayleigh's power at every period, the largest compared with
+ * that of as many trips thrown at random over energised time (seeded by the trips), which pays for all periods tried and for the time without
+ * supply. The shortest periods are given up before the longest when a span has too many to try.
+ */
+export function periodPattern(timeline: Timeline, trips: readonly number[]): Pattern {
+  const spanHours = (timeline.to - timeline.from) / HOUR_MS
+  const longest = Math.min(LONGEST_HOURS, spanHours / LEAST_TURNS)
+  if (longest <= SHORTEST_HOURS) return { verdict: 'The span is too short to tell a period.', p: null }
+  const step = 1 / (OVERSAMPLE * spanHours)
+  const count = Math.min(MOST_FREQUENCIES, Math.floor((1 / SHORTEST_HOURS - 1 / longest) / step) + 1)
+  const frequencies = Float64Array.from({ length: count }, (_, k) => 1 / longest + k * step)
+  const hours = trips.map((t) => (t - timeline.from) / HOUR_MS)
+  const seen = strongest(hours, frequencies)
+  const simulations = Math.max(99, Math.min(MOST_SIMULATIONS, Math.floor(COST / (count * hours.length))))
+  const random = seededRandom(`period ${hours.map((h) => h.toFixed(3)).join(' ')}`)
+  let asStrong = 1
+  for (let s = 0; s < simulations; s++) {
+    const thrown = hours.map(() => placeIn(timeline.energised, random.uniform(), timeline.from))
+    if (strongest(thrown, frequencies).power >= seen.power) asStrong++
+  }
+  const p = asStrong / (simulations + 1)
+  const method = `Rayleigh periodogram, ${count} periods, against ${simulations} random throws over energised time`
+  const figures = { p: rounded(p), method, trips: trips.length }
+  const period = 1 / frequencies[seen.at]!
+  if (p >= SPOKEN) {
+    return {
+      verdict: `No period from ${figure(1 / frequencies[count - 1]!)} hours to ${figure(longest)} stands out.`,
+      ...figures,
+    }
+  }
+  const whole = Math.abs(period - 24) < 0.5 ? ': the same time of day' : ''
+  return { verdict: `Trips keep a period of ${figure(period)} hours${whole}.`, ...figures, hours: rounded(period) }
+}
+
+/** Largest Rayleigh power over evenly spaced frequencies; each angle is turned on from the one before. */
+function strongest(hours: readonly number[], frequencies: Float64Array): { power: number; at: number } {
+  const count = frequencies.length
+  const c = new Float64Array(count)
+  const s = new Float64Array(count)
+  const step = count < 2 ? 0 : frequencies[1]! - frequencies[0]!
+  for (const h of hours) {
+    let x = Math.cos(2 * Math.PI * frequencies[0]! * h)
+    let y = Math.sin(2 * Math.PI * frequencies[0]! * h)
+    const turnX = Math.cos(2 * Math.PI * step * h)
+    const turnY = Math.sin(2 * Math.PI * step * h)
+    for (let k = 0; k < count; k++) {
+      c[k]! += x
+      s[k]! += y
+      const next = x * turnX - y * turnY
+      y = x * turnY + y * turnX
+      x = next
+    }
+  }
+  let power = 0
+  let at = 0
+  for (let k = 0; k < count; k++) {
+    const here = (c[k]! ** 2 + s[k]! ** 2) / hours.length
+    if (here > power) {
+      power = here
+      at = k
+    }
+  }
+  return { power, at }
+}
+
+/** The hour since `from` below which a share of the energised time lies. */
+function placeIn(energised: Spans, share: number, from: number): number {
+  let left = share * totalMs(energised)
+  for (let i = 0; i < energised.length; i += 2) {
+    const length = energised[i + 1]! - energised[i]!
+    if (left < length) return (energised[i]! + left - from) / HOUR_MS
+    left -= length
+  }
+  return 0
+}
