@@ -25,6 +25,10 @@ export const ODDS = {
 /** A circuit whose sheet lists no load may still feed one. */
 const LOADS_ASSUMED = 1
 
+/** Usual level this near the trip current: many together. A lift below this share of it is a last step. */
+const NEAR = 0.75
+const LAST_STEP = 0.12
+
 /**
  * Odds of a circuit or load. A circuit stands in for those of its loads that nothing can be said about. The log then
  * weighs in: runs that lift the level far towards the trip current make a likelier cause than runs without a trace.
@@ -37,7 +41,10 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
     const silent = loads.length === 0 ? LOADS_ASSUMED : loads.filter((t) => !isJudged(t.of)).length
     odds += silent * ODDS.load
   }
-  return odds * liftFactor(log.liftShare.get(thing.of)) * (log.followsCurrent === true ? 0.15 : 1)
+  const lift = log.liftShare.get(thing.of)
+  // where the usual level is near the trip current anyway, a small step is the last one, not the cause
+  const small = log.usualShare !== null && log.usualShare >= NEAR && lift !== undefined && lift < LAST_STEP ? 0.25 : 1
+  return odds * liftFactor(lift) * small * (log.followsCurrent === true ? 0.15 : 1)
 }
 
 function liftFactor(share: number | undefined): number {

@@ -9,6 +9,7 @@ import { loadCurrentOdds, ODDS, rainOdds, standingOdds, thingOdds } from './prio
 import { reasonsOf } from './reasons.ts'
 import type { RunProfile } from './run-profiles.ts'
 import { clockWindows, periodWindows } from './windows/clock-windows.ts'
+import { heldToTrips } from './windows/held-to-trips.ts'
 import { levelWindows } from './windows/level-windows.ts'
 import { sunWindows } from './windows/sun-windows.ts'
 import { thingWindows } from './windows/thing-windows.ts'
@@ -87,7 +88,9 @@ function candidatesOf(frame: Frame, courses: readonly TripFinding['course'][], m
   }
   const tooSensitive = isTooSensitive(timeline, measured)
   const level = levelWindows(frame, log)
-  const byThing = new Map(timeline.things.map((thing) => [thing.of, thingWindows(frame, thing)]))
+  const byThing = new Map(
+    timeline.things.map((thing) => [thing.of, thingWindows(frame, heldToTrips(thing, frame.trips))]),
+  )
   const isJudged = (of: string): boolean => (byThing.get(of)?.length ?? 0) > 0
   for (const thing of timeline.things) {
     const odds = thingOdds(timeline, thing, log, isJudged) * (tooSensitive ? 0.1 : 1)

@@ -8,8 +8,8 @@ import { type Frame, MINUTE_MS, windowOf } from './trip-share.ts'
 
 /** Shares of the time below the level above which headroom counts as used up. */
 const CUTS = [0.5, 0.75, 0.9, 0.97, 0.99] as const
-/** The level is that of a few minutes before: the last step of a trip must not speak for what stood there before. */
-const LATE_MS = 5 * MINUTE_MS
+/** The level is that of some minutes before: the last rise to a trip must not speak for what stood there before. */
+const LATE_MINUTES = [1, 5] as const
 /** High leakage is one thing's doing when that thing, lifting the level by so much of the trip current, … */
 const LARGE_SHARE = 0.12
 /** … was on in this share of the high time, and far less otherwise. */
@@ -18,7 +18,7 @@ const MOSTLY = 0.8
 const MOSTLY_UNEXPLAINED = 0.5
 
 /**
- * Hours in which the standing leakage was high, as it stood five minutes earlier, and high by many together: what one
+ * Hours in which the standing leakage was high, as it stood one or five minutes earlier, and high by many together: what one
  * load, rain or an unlisted thing brings about is theirs, and such a window is left out. Priors sum to one at most.
  */
 export function levelWindows(frame: Frame, log: LogView): ExposureWindow[] {
@@ -27,11 +27,14 @@ export function levelWindows(frame: Frame, log: LogView): ExposureWindow[] {
   const windows: ExposureWindow[] = []
   for (const q of CUTS) {
     const cut = quantile(sample, q)
-    const held = heldAbove(log.minutes, cut, true, LATE_MS)
-    if (isOneThings(frame.timeline, log, held.inside)) continue
-    const words = `while the standing leakage was above ${cut.toFixed(1)} mA`
-    const window = windowOf(frame, `above-${q}`, words, 1 / CUTS.length, held.inside, held.known)
-    if (window !== null) windows.push(window)
+    for (const minutes of LATE_MINUTES) {
+      const held = heldAbove(log.minutes, cut, true, minutes * MINUTE_MS)
+      if (isOneThings(frame.timeline, log, held.inside)) continue
+      const words = `while the standing leakage was above ${cut.toFixed(1)} mA`
+      const prior = 1 / (CUTS.length * LATE_MINUTES.length)
+      const window = windowOf(frame, `above-${q}-${minutes}`, words, prior, held.inside, held.known)
+      if (window !== null) windows.push(window)
+    }
   }
   return windows
 }

@@ -10,15 +10,12 @@ const AFTER_ON = [
   [10, 0.15],
   [30, 0.1],
 ] as const
-const AFTER_OFF = [
-  [1, 0.03],
-  [5, 0.03],
-] as const
+const AFTER_OFF = [[10, 0.04]] as const
 const LATE = [
   [10, 0.06],
   [60, 0.04],
 ] as const
-const WHILE_ON = 0.39
+const WHILE_ON = 0.41
 
 /**
  * The ways in which a circuit or load may fire trips: while it is on, within minutes of its start or its end, or
