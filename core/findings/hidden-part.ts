@@ -12,8 +12,5 @@ const LEAST_MA = 0.2
 export function hiddenPart(levelMa: number, riseMa: number): string | null {
   if (riseMa < LEAST_MA || levelMa < LARGE * riseMa) return null
   const quadrature = Math.sqrt(2 * levelMa * riseMa + riseMa * riseMa)
-  return (
-    `It raises a standing ${figure(levelMa)} mA by ${figure(riseMa)} mA; magnitudes do not add, so its own current may be more: ` +
-    `${figure(quadrature)} mA if it is conductive on a capacitive background, ${figure(2 * levelMa + riseMa)} mA at the very most.`
-  )
+  return `On a standing ${figure(levelMa)} mA magnitudes do not add: its own current is ${figure(quadrature)} mA if that is conductive and the rest capacitive, ${figure(2 * levelMa + riseMa)} mA at the very most.`
 }

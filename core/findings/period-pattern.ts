@@ -11,7 +11,7 @@ const LONGEST_HOURS = 240
 const LEAST_TURNS = 3
 const OVERSAMPLE = 3
 const MOST_FREQUENCIES = 1_200
-const MOST_SIMULATIONS = 399
+const MOST_SIMULATIONS = 199
 /** Turns of angles that the simulation may cost. */
 const COST = 4_000_000
 const SPOKEN = 0.05

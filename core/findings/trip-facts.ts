@@ -15,6 +15,11 @@ const LEAST_RISE = 0.02
 const STEP_MS = 5 * MINUTE_MS
 /** A level below this share of the least trip current is not yet within a step's reach of it; common practice, no source. */
 const WITHIN_REACH = 0.6
+/** Where the level has stood this near for an hour, a creep may have taken many hours: wet insulation does. */
+const NEAR = 0.8
+const SLOW_CREEP_HOURS = 8
+/** How far back the beginning of a rise is looked for: an element warms for half an hour at most. */
+const LOOK_BACK_MS = 30 * MINUTE_MS
 
 /** What the leakage log shows of one trip. Currents mA, times epoch ms. */
 export interface TripFact {
@@ -28,6 +33,8 @@ export interface TripFact {
   readonly riseMa: number | null
   /** When that rise was half done; null when there was none. */
   readonly roseAt: number | null
+  /** When it began to stand out from the level before; with a jump the same reading. Null when there was none. */
+  readonly roseFrom: number | null
   /** Slope over the last half hour without the last minutes. */
   readonly slopeMaPerMin: number | null
   /** Usual difference of one reading from the next, as a standard deviation. */
@@ -47,6 +54,7 @@ const UNSEEN = {
   usualMa: null,
   riseMa: null,
   roseAt: null,
+  roseFrom: null,
   slopeMaPerMin: null,
   noiseMa: null,
   course: 'unseen',
@@ -82,15 +90,19 @@ function lookBefore(
   const riseMa = levelMa - base
   const stepped = riseMa > threshold
   const slope = slopeBefore(timeline, leakage, end - stepMs, interval)
-  const crept = creepOf(timeline, leakage, end, interval, threshold)
   const least = timeline.rcd.rampTripMa ?? 0.5 * timeline.rcd.ratedMa
-  const drifting = crept !== null && crept > threshold && levelMa >= WITHIN_REACH * least
-  const course = drifting && crept >= Math.max(0, riseMa) ? 'creep' : stepped ? 'step' : drifting ? 'creep' : 'sudden'
+  const hours = usualMa >= NEAR * least ? SLOW_CREEP_HOURS : 1
+  const crept = Math.max(...[1, hours].map((h) => creepOf(timeline, leakage, end, h, interval, threshold)))
+  const drifting = crept > threshold && levelMa >= WITHIN_REACH * least
+  const course = drifting && crept >= riseMa ? 'creep' : stepped ? 'step' : drifting ? 'creep' : 'sudden'
   return {
     levelMa,
     usualMa,
     riseMa,
-    roseAt: stepped ? riseBegan(leakage, last, end - stepMs, base + riseMa / 2) : null,
+    roseAt: stepped ? risenSince(leakage, last, end - stepMs, base + riseMa / 2) : null,
+    roseFrom: stepped
+      ? risenSince(leakage, last, end - LOOK_BACK_MS, base + Math.max(0.1 * riseMa, threshold / 2))
+      : null,
     slopeMaPerMin: slope,
     noiseMa,
     course,
@@ -122,10 +134,10 @@ function noiseOf(timeline: Timeline, leakage: Series, to: number, hour: Series):
   return Math.max(noise, groupAccuracy(timeline).digitMa / 2)
 }
 
-/** When the last rise passed `half` for good, ms; looks back no further than `from`. */
-function riseBegan(leakage: Series, last: number, from: number, half: number): number {
+/** Since when the level has stood at `level` or above without a break, ms; looks back no further than `from`. */
+function risenSince(leakage: Series, last: number, from: number, level: number): number {
   let i = last
-  while (i > 0 && leakage.t[i - 1]! >= from && leakage.v[i - 1]! >= half) i--
+  while (i > 0 && leakage.t[i - 1]! >= from && leakage.v[i - 1]! >= level) i--
   return leakage.t[i]!
 }
 
@@ -140,20 +152,27 @@ function slopeBefore(timeline: Timeline, leakage: Series, to: number, interval: 
 }
 
 /**
- * How much the level crept up over the hour before the last minutes: the greatest rise of smoothed levels (twelfths of
- * the hour) that is spread over at least three of them, less the largest single one; a single jump is no creep.
+ * How much the level crept up over the hours before: the rise of smoothed levels (twelfths of the time) up to the trip, as
+ * far back as it went on rising; 0 when one of them made most of it, for a single jump is no creep, or when there is too little to see.
  */
-function creepOf(timeline: Timeline, leakage: Series, end: number, interval: number, threshold: number): number | null {
-  const span = Math.max(HOUR_MS, 12 * interval)
+function creepOf(
+  timeline: Timeline,
+  leakage: Series,
+  end: number,
+  hours: number,
+  interval: number,
+  threshold: number,
+): number {
+  const span = Math.max(hours * HOUR_MS, 12 * interval)
   const from = Math.max(end - span, energisedSince(timeline, end))
   const part = (end + 1 - from) / 12
-  if (part < interval) return null
+  if (part < interval) return 0
   const levels: number[] = []
   for (let k = 0; k < 12; k++) {
     const level = levelBetween(leakage, from + k * part, from + (k + 1) * part)
     if (!Number.isNaN(level)) levels.push(level)
   }
-  if (levels.length < 5) return null
+  if (levels.length < 5) return 0
   let start = levels.length - 1
   while (start > 0 && levels[start - 1]! <= levels[start]! + threshold / 10) start--
   let largest = 0

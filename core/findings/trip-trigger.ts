@@ -7,8 +7,12 @@ const MINUTE_MS = 60_000
 const SUDDEN_MS = MINUTE_MS
 /** Before the rise of a step: clocks of loggers and switches differ by seconds. */
 const STEP_SLACK_MS = MINUTE_MS
+/** An element may warm for some minutes before its leak stands out. */
+const CLIMB_SLACK_MS = 4 * MINUTE_MS
 /** A climb is a warming or wetting of half an hour at most after switching on. */
 const CREEP_MS = 40 * MINUTE_MS
+/** From the first sign of a rise to half of it: a jump takes no longer. */
+const JUMP_MS = 20_000
 /** Switching off may fire a device by its transient, but only at once. */
 const OFF_MS = 10_000
 /** What ends within so much of the trip ended with it. */
@@ -32,7 +36,8 @@ export function triggerOf(timeline: Timeline, fact: TripFact, lines: readonly Bu
   if (fact.course === 'shared' || trip.to - trip.from > 2 * MINUTE_MS) return null
   const end = trip.to
   const since = earliest(fact, trip.from)
-  const until = fact.course === 'step' && fact.roseAt !== null ? Math.min(end, fact.roseAt + STEP_SLACK_MS) : end
+  const until =
+    fact.course === 'step' && fact.roseAt !== null && !isClimb(fact) ? Math.min(end, fact.roseAt + STEP_SLACK_MS) : end
   let best: { trigger: Trigger; ma: number } | null = null
   for (const thing of timeline.things) {
     const change = changeBehind(thing, fact, trip.from, since, until)
@@ -48,8 +53,15 @@ export function triggerOf(timeline: Timeline, fact: TripFact, lines: readonly Bu
   return best?.trigger ?? null
 }
 
+/** Whether the last rise took longer than a jump does between two readings of a slow logger. */
+export function isClimb(fact: TripFact): boolean {
+  return fact.roseAt !== null && fact.roseFrom !== null && fact.roseAt - fact.roseFrom > JUMP_MS
+}
+
 function earliest(fact: TripFact, tripAt: number): number {
-  if (fact.course === 'step' && fact.roseAt !== null) return fact.roseAt - STEP_SLACK_MS
+  if (fact.course === 'step' && fact.roseFrom !== null) {
+    return fact.roseFrom - (isClimb(fact) ? CLIMB_SLACK_MS : STEP_SLACK_MS)
+  }
   return tripAt - (fact.course === 'creep' ? CREEP_MS : SUDDEN_MS)
 }
 

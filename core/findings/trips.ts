@@ -3,7 +3,7 @@ import { writeInstant } from '../contract/primitives.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import { type TripFact, tripFacts } from './trip-facts.ts'
 import { sharesAt } from './trip-shares.ts'
-import { type Trigger, triggerOf } from './trip-trigger.ts'
+import { isClimb, type Trigger, triggerOf } from './trip-trigger.ts'
 import { duration, figure, rounded, sentence } from './words.ts'
 
 const MINUTE_MS = 60_000
@@ -51,9 +51,12 @@ function courseText(timeline: Timeline, fact: TripFact): string {
     case 'unseen':
       return unseenText(timeline, fact)
     case 'step':
+      if (isClimb(fact)) {
+        return `climb of ${figure(fact.riseMa ?? 0)} mA over the last ${ago(timeline.trips[fact.index]!.from - (fact.roseFrom ?? 0))}`
+      }
       return `step of ${figure(fact.riseMa ?? 0)} mA ${ago(timeline.trips[fact.index]!.from - (fact.roseAt ?? 0))} before`
     case 'creep':
-      return `the level had crept up${fact.slopeMaPerMin !== null && fact.slopeMaPerMin > 0 ? ` by ${figure(fact.slopeMaPerMin)} mA a minute` : ''}`
+      return `the level had crept up${fact.slopeMaPerMin !== null && fact.slopeMaPerMin >= 0.01 ? ` by ${figure(fact.slopeMaPerMin)} mA a minute` : ''}`
     case 'sudden':
       return 'no warning in the log'
     default:

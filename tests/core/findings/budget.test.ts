@@ -193,6 +193,6 @@ describe('budget', () => {
     // domain.md: 5 mA conductive on 12 mA capacitive reads 13 mA, a rise of 1 mA.
     const [line] = budget(logOf(bare, (t) => (whileOn(bare, 'load:heater', t) ? Math.hypot(5, 12) : 12)))
     expect(line!.ma).toBeCloseTo(1, 6)
-    expect(line!.note).toMatch(/12 mA by 1 mA.* 5 mA if it is conductive/)
+    expect(line!.note).toMatch(/standing 12 mA .* 5 mA if that is conductive/)
   })
 })

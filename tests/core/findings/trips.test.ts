@@ -171,3 +171,58 @@ describe('laws', () => {
     expect(other).toEqual(one)
   })
 })
+
+describe('a heater that warms', () => {
+  it('is the trigger of a climb of some minutes, not the small load that came on in the middle of it', () => {
+    // On seven minutes before; leaks from the third minute on.
+    const warm = (s: number) => (s > 0 && s < 300 ? 10 + (12 * (300 - s)) / 300 : 10)
+    const things = [run('defrost', 420), run('compressor', 110)]
+    const found = find(logged(warm, { things }), [lineOf('load:defrost', 7), lineOf('load:compressor', 0.7)])
+    expect(found).toMatchObject({ course: 'step', trigger: 'load:defrost' })
+    expect(found.text).toMatch(/climb of 1[12](\.\d+)? mA over the last [45] min; defrost had come on 7 min earlier/)
+  })
+})
+
+describe('a level that has stood near the trip current for hours', () => {
+  it('crept there, though the last hour hardly shows it', () => {
+    const slow = (s: number) => (s > 0 ? 24 - (4 * s) / (10 * 3_600) : 24)
+    const timeline = logged(slow)
+    expect(find({ ...timeline, rcd: { ...timeline.rcd, rampTripMa: 24.4 } }).course).toBe('creep')
+  })
+})
+
+describe('shares of circuits', () => {
+  const circuit = (given: object) => ({
+    ...loadOn('1', [[START, START + 12 * HOUR]], START, START + 12 * HOUR),
+    of: 'circuit:1',
+    kind: 'circuit' as const,
+    ...given,
+  })
+
+  it('take off what ran on a circuit when it was surveyed', () => {
+    const things = [circuit({ changes: [] }), run('a', 8 * 3_600)]
+    const test = { id: 's', kind: 'clamp' as const, rcd: 'A', ma: 6, off: ['circuit:1'], at: START + 4 * HOUR }
+    const line: BudgetLine = { ...lineOf('circuit:1', 4), basis: 'survey' }
+    expect(
+      find(
+        logged(() => 8, { things, tests: [test] }),
+        [line, lineOf('load:a', 1)],
+      ).shares,
+    ).toEqual([
+      { of: 'circuit:1', ma: 3 },
+      { of: 'load:a', ma: 1 },
+    ])
+  })
+
+  it('go by the own clamp where there is one', () => {
+    const leakage = seriesOf([AT - 20_000, AT - 10_000, AT], [5, 5.5, 0])
+    const things = [circuit({ changes: [], leakage }), run('a', 600)]
+    const line: BudgetLine = { ...lineOf('circuit:1', 4), basis: 'channel' }
+    expect(
+      find(
+        logged(() => 8, { things }),
+        [line, lineOf('load:a', 1)],
+      ).shares[0],
+    ).toEqual({ of: 'circuit:1', ma: 4.5 })
+  })
+})
