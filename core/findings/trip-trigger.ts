@@ -1,4 +1,5 @@
 import type { BudgetLine } from '../contract/findings.ts'
+import { spanAt } from '../timeline/spans.ts'
 import type { Change, Thing, Timeline } from '../timeline/timeline.ts'
 import type { TripFact } from './trip-facts.ts'
 
@@ -15,6 +16,8 @@ const CREEP_MS = 40 * MINUTE_MS
 const JUMP_MS = 20_000
 /** Switching off may fire a device by its transient, but only at once. */
 const OFF_MS = 10_000
+/** What runs so soon after closing came back with the supply. */
+const COMES_BACK_MS = MINUTE_MS
 /** What ends within so much of the trip ended with it. */
 const AT_ONCE_MS = 1_000
 
@@ -40,7 +43,7 @@ export function triggerOf(timeline: Timeline, fact: TripFact, lines: readonly Bu
     fact.course === 'step' && fact.roseAt !== null && !isClimb(fact) ? Math.min(end, fact.roseAt + STEP_SLACK_MS) : end
   let best: { trigger: Trigger; ma: number } | null = null
   for (const thing of timeline.things) {
-    const change = changeBehind(thing, fact, trip.from, since, until)
+    const change = changeBehind(thing, fact, trip.from, since, until) ?? cameBack(timeline, thing, trip.from, since)
     if (change === null) continue
     const agoMs = Math.max(0, trip.from - change.at)
     // What falls when it comes on has not fired a rise.
@@ -76,6 +79,14 @@ function changeBehind(thing: Thing, fact: TripFact, tripAt: number, since: numbe
   if (fact.course === 'sudden') return tripAt - last.at <= OFF_MS ? last : null
   const start = thing.changes[k - 1]
   return fact.roseAt !== null && last.at >= fact.roseAt && start?.on && start.at >= since ? start : null
+}
+
+/** A load that came back with the supply when the device was closed, and runs since: a start too, though nobody switched it. */
+function cameBack(timeline: Timeline, thing: Thing, tripAt: number, since: number): Change | null {
+  const run = spanAt(thing.state.on, tripAt - 1)
+  const supply = spanAt(timeline.energised, tripAt - 1)
+  if (thing.kind !== 'load' || run === undefined || supply === undefined || supply.from === timeline.from) return null
+  return run.from >= since && run.from - supply.from <= COMES_BACK_MS ? { at: run.from, on: true } : null
 }
 
 /** Position of the latest change at or before t, -1 when none. O(log n). */

@@ -226,3 +226,23 @@ describe('shares of circuits', () => {
     ).toEqual({ of: 'circuit:1', ma: 4.5 })
   })
 })
+
+describe('a trip minutes after the device was closed again', () => {
+  it('may be the doing of what came back with the supply', () => {
+    const closed = AT - 4 * MINUTE
+    const heater = { ...loadOn('defrost', [[closed + 1_000, AT]], START, START + 12 * HOUR), changes: [] }
+    const steady = { ...loadOn('sign', [[closed + 1_000, AT]], START, START + 12 * HOUR), changes: [] }
+    const bare = logged((s) => (s > 0 && s < 220 ? 10 + (12 * (220 - s)) / 220 : 10), { things: [steady, heater] })
+    const energised = spansOf([
+      [START, AT - 30 * MINUTE],
+      [closed, AT],
+    ])
+    const lines = [lineOf('load:sign', 0.4), lineOf('load:defrost', 7)]
+    expect(find({ ...bare, energised, logged: energised }, lines)).toMatchObject({
+      course: 'step',
+      trigger: 'load:defrost',
+    })
+    // Without the closing in between it is not known when it came on.
+    expect(find(bare, lines).trigger).toBeNull()
+  })
+})
