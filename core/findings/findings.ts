@@ -8,6 +8,7 @@ import { budget } from './budget.ts'
 import { coverage } from './coverage.ts'
 import { headroom } from './headroom.ts'
 import { nextSteps } from './isolation.ts'
+import { patterns } from './patterns.ts'
 import { proof } from './proof.ts'
 import { runProfiles } from './run-profiles.ts'
 import { suspects } from './suspects.ts'
@@ -15,16 +16,6 @@ import { tripFindings } from './trips.ts'
 
 /** Raised whenever the same evidence may give other findings than before; part of every cache key. */
 export const FINDINGS_VERSION = 1
-
-const UNTRIED: Findings['patterns'] = {
-  clock: { verdict: 'not looked at' },
-  period: { verdict: 'not looked at' },
-  sun: { verdict: 'not looked at' },
-  rain: { verdict: 'not looked at' },
-  temperature: { verdict: 'not looked at' },
-  load: { verdict: 'not looked at' },
-  timedSteps: [],
-}
 
 /**
  * The findings of one device over [from, to): the only door into this folder. Same evidence, same bytes.
@@ -49,7 +40,7 @@ export function findings(evidence: Evidence): Findings {
     budget: lines,
     trips,
     suspects: weighed.suspects,
-    patterns: UNTRIED,
+    patterns: patterns(timeline),
     next: nextSteps(timeline, hours, weighed.suspects),
     proof: proof(timeline),
     notes: [...timeline.notes],

@@ -22,7 +22,24 @@ const SEEN: Readonly<Record<CauseKind | 'background', Readonly<Record<Exclude<Co
   unlisted: { sudden: 0.38, step: 0.36, creep: 0.24, shared: 0.02 },
 }
 
-/** Chance of a trip's course under a kind of cause over its chance under the background; 1 when nothing was seen. */
-export function courseRatio(kind: CauseKind, course: Course): number {
-  return course === 'unseen' ? 1 : SEEN[kind][course] / SEEN.background[course]
+/** What a logger that reads too seldom sees of any cause: nearly always nothing. */
+const BLIND: Readonly<Record<Exclude<Course, 'unseen'>, number>> = {
+  sudden: 0.88,
+  step: 0.06,
+  creep: 0.04,
+  shared: 0.02,
+}
+/** A logger that reads so often sees what there is to see; one that reads ten times as seldom a tenth of it. */
+const SEES_ALL_MS = 10_000
+
+/**
+ * Chance of a trip's course under a kind of cause over its chance under the background; 1 when nothing was seen.
+ * `intervalMs` is the leakage logger's usual interval: the seldomer it reads, the less a course says.
+ */
+export function courseRatio(kind: CauseKind, course: Course, intervalMs: number): number {
+  if (course === 'unseen') return 1
+  // together with others is seen by their own trips, not by the log
+  const sees = course === 'shared' ? 1 : Math.min(1, SEES_ALL_MS / Math.max(1, intervalMs))
+  const chance = (of: CauseKind | 'background'): number => sees * SEEN[of][course] + (1 - sees) * BLIND[course]
+  return chance(kind) / chance('background')
 }

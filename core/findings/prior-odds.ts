@@ -25,6 +25,12 @@ export const ODDS = {
 /** A circuit whose sheet lists no load may still feed one. */
 const LOADS_ASSUMED = 1
 
+/**
+ * A run that lifts the leakage by more than this is faulty by itself: 1.5 times what IEC 60335-1 clause 13.2 allows a
+ * stationary appliance of class I (3.5 mA; from memory).
+ */
+const ABNORMAL_MA = 5.25
+
 /** Usual level this near the trip current: many together. A lift below this share of it is a last step. */
 const NEAR = 0.75
 const LAST_STEP = 0.12
@@ -44,11 +50,12 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
   const lift = log.liftShare.get(thing.of)
   // where the usual level is near the trip current anyway, a small step is the last one, not the cause
   const small = log.usualShare !== null && log.usualShare >= NEAR && lift !== undefined && lift < LAST_STEP ? 0.25 : 1
-  return odds * liftFactor(lift) * small * (log.followsCurrent === true ? 0.15 : 1)
+  return odds * liftFactor(lift, log.tripMa) * small * (log.followsCurrent === true ? 0.15 : 1)
 }
 
-function liftFactor(share: number | undefined): number {
+function liftFactor(share: number | undefined, tripMa: number): number {
   if (share === undefined) return 1
+  if (share >= 0.3 && share * tripMa >= ABNORMAL_MA) return 12
   if (share >= 0.2) return 3
   if (share >= 0.12) return 1.5
   if (share >= 0.06) return 0.6

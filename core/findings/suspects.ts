@@ -1,6 +1,8 @@
 import type { BudgetLine, Grade, Headroom, Reason, Role, Suspect, TripFinding } from '../contract/findings.ts'
+import { usualInterval } from '../timeline/series.ts'
 import { spansOf, totalMs, union } from '../timeline/spans.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
+import { episodes } from './episodes.ts'
 import { type Candidate, type ExposureWindow, type LineUp, lineUp, type Standing } from './line-up.ts'
 import { type LogView, logView } from './log-view.ts'
 import { type CauseKind, courseRatio } from './marks.ts'
@@ -13,12 +15,9 @@ import { heldToTrips } from './windows/held-to-trips.ts'
 import { levelWindows } from './windows/level-windows.ts'
 import { sunWindows } from './windows/sun-windows.ts'
 import { thingWindows } from './windows/thing-windows.ts'
-import { type Frame, HOUR_MS, MINUTE_MS, marked, windowOf } from './windows/trip-share.ts'
+import { type Frame, HOUR_MS, marked, windowOf } from './windows/trip-share.ts'
 import { dryings, loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
 import { nameOf, rounded } from './words.ts'
-
-/** A trip soon after the device was closed again belongs to the episode before: the same fault, still there. */
-const EPISODE_MS = 15 * MINUTE_MS
 
 /** Below this a suspect with contrast is cleared; grades of methods.md §8. */
 const CLEARED = 0.02
@@ -43,9 +42,9 @@ export interface Measured {
  */
 export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const hours = totalMs(timeline.energised) / HOUR_MS
-  const { kept, first } = episodes(timeline)
+  const kept = episodes(timeline.trips)
   const frame: Frame = { timeline, hours, trips: kept }
-  const courses = first.map((i) => measured.trips[i]?.course ?? 'unseen')
+  const courses = kept.map((trip) => measured.trips[timeline.trips.indexOf(trip)]?.course ?? 'unseen')
   const candidates = kept.length === 0 || hours <= 0 ? [] : candidatesOf(frame, courses, measured)
   const weighed: LineUp =
     candidates.length === 0 ? { standings: [], none: 1, unexplained: 1 } : lineUp(hours, kept.length, candidates)
@@ -63,25 +62,12 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
   return { suspects: all, frame, lineUp: weighed }
 }
 
-/** Trips as episodes: a repeat within a quarter of an hour of closing again is not news. */
-function episodes(timeline: Timeline): { kept: { from: number; to: number }[]; first: number[] } {
-  const kept: { from: number; to: number }[] = []
-  const first: number[] = []
-  let closed = Number.NEGATIVE_INFINITY
-  timeline.trips.forEach((trip, i) => {
-    if (trip.from - closed >= EPISODE_MS) {
-      kept.push({ from: trip.from, to: trip.to })
-      first.push(i)
-    }
-    closed = Math.max(closed, trip.restoredAt ?? Number.NEGATIVE_INFINITY)
-  })
-  return { kept, first }
-}
-
 function candidatesOf(frame: Frame, courses: readonly TripFinding['course'][], measured: Measured): Candidate[] {
   const { timeline } = frame
   const log = logView(timeline, measured.budget, measured.profiles, measured.headroom)
-  const marks = (kind: CauseKind): Float64Array => Float64Array.from(courses, (course) => courseRatio(kind, course))
+  const interval = timeline.leakage === null ? Number.NaN : usualInterval(timeline.leakage)
+  const marks = (kind: CauseKind): Float64Array =>
+    Float64Array.from(courses, (course) => courseRatio(kind, course, Number.isNaN(interval) ? 1 : interval))
   const list: Candidate[] = []
   const add = (of: string, odds: number, kind: CauseKind, windows: readonly ExposureWindow[]): void => {
     if (windows.length > 0 && odds > 0) list.push({ of, odds, windows: marked(windows, marks(kind)) })
@@ -93,7 +79,7 @@ function candidatesOf(frame: Frame, courses: readonly TripFinding['course'][], m
   )
   const isJudged = (of: string): boolean => (byThing.get(of)?.length ?? 0) > 0
   for (const thing of timeline.things) {
-    const odds = thingOdds(timeline, thing, log, isJudged) * (tooSensitive ? 0.1 : 1)
+    const odds = thingOdds(timeline, thing, log, isJudged) * (tooSensitive ? 0.03 : 1)
     add(thing.of, odds, 'load', byThing.get(thing.of) ?? [])
   }
   const laws = dryings(frame, log.unexplained?.remainder ?? null)
@@ -105,7 +91,7 @@ function candidatesOf(frame: Frame, courses: readonly TripFinding['course'][], m
   add('period', ODDS.period, 'schedule', periodWindows(frame))
   add('sun', ODDS.sun, 'schedule', sunWindows(frame))
   add('load-current', loadCurrentOdds(log), 'load-current', loadCurrentWindows(frame))
-  if (tooSensitive) add('device', 3, 'device', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
+  if (tooSensitive) add('device', 6, 'device', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
   else add('standing', standingOdds(log, measured.headroom), 'standing', level)
   add('supply', ODDS.supply, 'supply', always(frame, 'together with others', 1))
   const seen = unlistedWindows(frame, log, rain > 2 * ODDS.rain)

@@ -118,6 +118,7 @@ function thingsOf(rcd: Rcd, sources: StateSources, notes: string[]): Thing[] {
         state,
         changes: edgesOf(state).filter((e) => !(byChannel && e.on && comesBack(e.at, sources))),
         source: own.source,
+        readEveryMs: own.readEveryMs,
         leakage: leakage.level,
       })
     }

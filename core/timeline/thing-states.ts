@@ -4,8 +4,8 @@ import type { Kept } from './evidence.ts'
 import { clipExposure, type Exposure, exposureOfSpans, fillUnknown, UNKNOWN } from './exposure.ts'
 import { loadCurrentRule } from './load-current.ts'
 import type { LocalClock } from './local-clock.ts'
-import { runningRule, type StepRule, stepsOf } from './running.ts'
-import { type Series, sliceSeries } from './series.ts'
+import { runningRule, type StepRule, sendsOnlyChanges, stepsOf } from './running.ts'
+import { type Series, sliceSeries, usualInterval } from './series.ts'
 import { countSpans, eachSpan, NO_SPANS, type Spans, spansOf, union } from './spans.ts'
 import type { Thing } from './timeline.ts'
 import { exposureOfTimetables } from './timetable-spans.ts'
@@ -28,6 +28,7 @@ export interface StateSources {
 export interface ThingState {
   readonly state: Exposure
   readonly source: Thing['source']
+  readonly readEveryMs: Thing['readEveryMs']
 }
 
 /**
@@ -43,23 +44,45 @@ export function stateOf(kind: 'circuit' | 'load', ref: string, sources: StateSou
   const running = channelOf(kind, ref, 'running', sources)
   if (running !== null) {
     const state = logged(running.series, runningRule(running.series), sources.energised)
-    return { state: fillUnknown(state, offByHand), source: 'running' }
+    return { state: fillUnknown(state, offByHand), source: 'running', readEveryMs: readEvery(running.series) }
   }
   const current = kind === 'load' ? channelOf(kind, ref, 'load-current', sources) : null
   if (current !== null) {
     const rule = loadCurrentRule(current.series)
     if (rule !== null) {
       const state = logged(current.series, rule, sources.energised)
-      return { state: fillUnknown(state, offByHand), source: 'load-current' }
+      return { state: fillUnknown(state, offByHand), source: 'load-current', readEveryMs: readEvery(current.series) }
     }
     notes.push(`Channel ${current.ref} does not show two levels of current: it does not tell when ${of} runs.`)
   }
   const timetables = sources.timetables.get(of) ?? []
   const timed = exposureOfTimetables(timetables, sources.clock, from, to)
   const assumed = kind === 'circuit' ? exposureOfSpans(spansOf([[from, to]]), from, to) : UNKNOWN
-  if (switched !== null) return { state: fillUnknown(fillUnknown(switched, timed), assumed), source: 'switching' }
-  if (timetables.length > 0) return { state: fillUnknown(timed, assumed), source: 'timetable' }
-  return { state: assumed, source: 'assumed' }
+  if (switched !== null)
+    return { state: fillUnknown(fillUnknown(switched, timed), assumed), source: 'switching', readEveryMs: null }
+  if (timetables.length > 0) return { state: fillUnknown(timed, assumed), source: 'timetable', readEveryMs: null }
+  return { state: assumed, source: 'assumed', readEveryMs: null }
+}
+
+/** Share of the changes that must come off the beat for a channel that tells changes as they come. */
+const OFF_BEAT = 0.3
+
+/**
+ * How long a change may stand unread: the usual interval of a channel that reads on the beat, null for one that also
+ * tells changes as they come (its changes come sooner after the reading before than the beat).
+ */
+function readEvery(series: Series): number | null {
+  if (sendsOnlyChanges(series)) return null
+  const usual = usualInterval(series)
+  if (Number.isNaN(usual)) return null
+  let changes = 0
+  let early = 0
+  for (let i = 1; i < series.t.length; i++) {
+    if (series.v[i]! >= 0.5 === series.v[i - 1]! >= 0.5) continue
+    changes++
+    if (series.t[i]! - series.t[i - 1]! < 0.9 * usual) early++
+  }
+  return changes > 0 && early >= OFF_BEAT * changes ? null : usual
 }
 
 /** The state by switchings; before the first one a circuit is on and a load unknown. Null without any. */

@@ -42,6 +42,8 @@ export interface Thing {
   readonly changes: readonly Change[]
   /** Where the state comes from, most exact first. */
   readonly source: 'running' | 'load-current' | 'switching' | 'timetable' | 'assumed'
+  /** A change may have stood so long before the state's channel read it, ms; null when changes are told as they come. */
+  readonly readEveryMs: number | null
   /** Its own leakage channel, when it has one. */
   readonly leakage: Series | null
 }

@@ -32,6 +32,7 @@ export function loadOn(ref: string, on: readonly (readonly [number, number])[], 
     state: { on: spans, off: spansOf(off) },
     changes: [...spans].map((t, i) => ({ at: t, on: i % 2 === 0 })).filter((c) => c.at > from && c.at < to),
     source: 'running',
+    readEveryMs: null,
     leakage: null,
   }
 }

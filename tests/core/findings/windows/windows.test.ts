@@ -3,7 +3,7 @@ import { clockWindows, periodWindows } from '../../../../core/findings/windows/c
 import { sunWindows } from '../../../../core/findings/windows/sun-windows.ts'
 import { thingWindows } from '../../../../core/findings/windows/thing-windows.ts'
 import type { Frame } from '../../../../core/findings/windows/trip-share.ts'
-import { antecedent, rainWindows } from '../../../../core/findings/windows/weather-windows.ts'
+import { antecedent, dryings, rainWindows } from '../../../../core/findings/windows/weather-windows.ts'
 import { sunTimes } from '../../../../core/timeline/sun.ts'
 import type { Timeline } from '../../../../core/timeline/timeline.ts'
 import { HOUR, loadOn, MINUTE, START, timelineOf, tripAt } from '../timeline-of.ts'
@@ -107,9 +107,13 @@ describe('rainWindows', () => {
     const t = Float64Array.from({ length: 168 }, (_, i) => START + i * HOUR)
     const v = Float64Array.from(t, (_, i) => (i === 50 ? 3.9 : 0))
     const trips = [tripAt(START + 53 * HOUR), tripAt(START + 120 * HOUR)]
-    const windows = rainWindows(frameOf(timelineOf({ rain: { t, v }, trips })))
-    expect(inside(windows, 'wet-4-0-1')).toEqual([1, 0])
-    // 3.9 mm fade to 1 mm in 7.9 h: the readings of eight hours lie above
-    expect(windows.find((w) => w.key === 'wet-4-0-1')!.hours).toBeCloseTo(8, 6)
+    const frame = frameOf(timelineOf({ rain: { t, v }, trips }))
+    const laws = dryings(frame, null)
+    const windows = rainWindows(frame, laws)
+    expect(windows.reduce((sum, w) => sum + w.prior, 0)).toBeCloseTo(1, 10)
+    // 3.9 mm fade to 0.2 mm in 17 h at a half-life of 4 h: 18 readings lie above
+    const wet = windows.find((w) => w.key === 'wet-4-0-0.2')!
+    expect([...wet.inside]).toEqual([1, 0])
+    expect(wet.hours).toBeCloseTo(18, 6)
   })
 })
