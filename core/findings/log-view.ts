@@ -26,6 +26,11 @@ export interface LogView {
 /** Runs or switchings that a lift must rest on. */
 const LEAST_RUNS = 3
 
+/** A figure of the budget whose interval does not hold zero. */
+export function isSure(line: BudgetLine): boolean {
+  return line.basis === 'switching' && line.low !== null && line.low > 0
+}
+
 /** Reads the log once for the line-up. Linear in readings. */
 export function logView(
   timeline: Timeline,
@@ -39,7 +44,7 @@ export function logView(
     const profile = profiles.get(thing.of)
     const line = budget.find((b) => b.of === thing.of)
     const byRuns = profile !== undefined && profile.runs >= LEAST_RUNS ? profile.riseMa : null
-    const bySwitching = line?.basis === 'switching' && line.switchings >= LEAST_RUNS ? line.ma : null
+    const bySwitching = line !== undefined && isSure(line) && line.switchings >= 2 ? line.ma : null
     if (byRuns !== null || bySwitching !== null) {
       liftShare.set(thing.of, Math.max(byRuns ?? 0, bySwitching ?? 0) / tripMa)
     }

@@ -14,7 +14,7 @@ export const ODDS = {
   temperature: 0.02,
   clock: 0.06,
   period: 0.04,
-  sun: 0.04,
+  sun: 0.06,
   'load-current': 0.05,
   standing: 0.08,
   device: 0.03,
@@ -67,7 +67,7 @@ export function standingOdds(log: LogView, headroom: Headroom): number {
   const share = log.usualShare
   if (share === null) return 0
   const sure = headroom.tripMa.basis === 'limits' ? 0.5 : 1
-  const factor = share >= 0.8 ? 5 : share >= 0.65 ? 2 : share >= 0.5 ? 0.4 : 0.1
+  const factor = share >= 0.8 ? 5 : share >= 0.7 ? 2 : share >= 0.6 ? 0.4 : 0
   return ODDS.standing * factor ** sure
 }
 

@@ -42,7 +42,7 @@ export function unexplained(
   const v = minutes.v.slice()
   for (const thing of timeline.things) {
     const line = budget.find((b) => b.of === thing.of)
-    if (line?.ma === null || line?.ma === undefined) continue
+    if (line?.ma === null || line?.ma === undefined || line.low === null || line.low <= 0) continue
     const { on } = thing.state
     for (let i = 0; i < on.length; i += 2) {
       const end = lowerBound(minutes.t, on[i + 1]!)

@@ -5,21 +5,10 @@ import { type Frame, MINUTE_MS, normalised, windowOf } from './trip-share.ts'
 
 const DAY_MS = 86_400_000
 
-/** Minutes before and after sunset or sunrise that are tried. */
-const ROUND_SUNSET = [
-  [-15, 15],
-  [-30, 30],
-  [0, 30],
-  [0, 60],
-  [0, 120],
-  [-60, 0],
-] as const
-const ROUND_SUNRISE = [
-  [-15, 15],
-  [-30, 30],
-  [0, 60],
-  [-60, 0],
-] as const
+/** Widths of a window round sunset or sunrise that are tried, and how far from it they reach, minutes. */
+const WIDTHS = [10, 20, 40, 90] as const
+const EARLIEST = -60
+const LATEST = 150
 
 /** What follows the sun: round sunset, round sunrise, and the whole night. Empty without coordinates. */
 export function sunWindows(frame: Frame): ExposureWindow[] {
@@ -34,22 +23,41 @@ export function sunWindows(frame: Frame): ExposureWindow[] {
     if (sunrise !== null) rises.push(sunrise)
   }
   const all = spansOf([[timeline.from, timeline.to]])
-  const round = (times: readonly number[], name: string, from: number, to: number): ExposureWindow | null =>
-    windowOf(
-      frame,
-      `${name}${from}..${to}`,
-      from < 0 && to > 0
-        ? `within ${to} minutes of ${name}`
-        : `in the ${to - from} minutes ${from < 0 ? 'before' : 'after'} ${name}`,
-      1,
-      spansOf(times.map((t) => [t + from * MINUTE_MS, t + to * MINUTE_MS] as const)),
-      all,
-    )
+  const windows: (ExposureWindow | null)[] = []
+  for (const [times, name] of [
+    [sets, 'sunset'],
+    [rises, 'sunrise'],
+  ] as const) {
+    for (const width of WIDTHS) {
+      const count = Math.floor((LATEST - EARLIEST - width) / (width / 2)) + 1
+      for (let k = 0; k < count; k++) {
+        const from = EARLIEST + (k * width) / 2
+        const spans = spansOf(times.map((t) => [t + from * MINUTE_MS, t + (from + width) * MINUTE_MS] as const))
+        windows.push(
+          windowOf(
+            frame,
+            `${name}${from}..${from + width}`,
+            roundWords(name, from, from + width),
+            1 / count,
+            spans,
+            all,
+          ),
+        )
+      }
+    }
+  }
   const night = nightSpans(timeline.from, timeline.to, latitude, longitude)
-  return normalised([
-    ...ROUND_SUNSET.map(([from, to]) => round(sets, 'sunset', from, to)),
-    ...ROUND_SUNRISE.map(([from, to]) => round(rises, 'sunrise', from, to)),
+  const day = complement(night, timeline.from, timeline.to)
+  windows.push(
     windowOf(frame, 'night', 'in the dark', 1, night, all),
-    windowOf(frame, 'day', 'in daylight', 1, complement(night, timeline.from, timeline.to), all),
-  ])
+    windowOf(frame, 'day', 'in daylight', 0.5, day, all),
+  )
+  return normalised(windows)
+}
+
+function roundWords(name: string, from: number, to: number): string {
+  if (from === 0) return `in the ${to} minutes after ${name}`
+  if (to === 0) return `in the ${-from} minutes before ${name}`
+  if (from < 0 && to > 0) return `from ${-from} minutes before to ${to} minutes after ${name}`
+  return from < 0 ? `from ${-from} to ${-to} minutes before ${name}` : `from ${from} to ${to} minutes after ${name}`
 }
