@@ -12,6 +12,7 @@ import { patterns } from './patterns.ts'
 import { proof } from './proof.ts'
 import { runProfiles } from './run-profiles.ts'
 import { suspects } from './suspects.ts'
+import { timedSteps } from './timed-steps.ts'
 import { tripFindings } from './trips.ts'
 
 /** Raised whenever the same evidence may give other findings than before; part of every cache key. */
@@ -40,7 +41,7 @@ export function findings(evidence: Evidence): Findings {
     budget: lines,
     trips,
     suspects: weighed.suspects,
-    patterns: patterns(timeline),
+    patterns: { ...patterns(timeline), timedSteps: timedSteps(weighed.log.unexplained, weighed.log.schedule) },
     next: nextSteps(timeline, hours, weighed.suspects),
     proof: proof(timeline),
     notes: [...timeline.notes],

@@ -6,6 +6,7 @@ import type { Timeline } from '../timeline/timeline.ts'
 import { followsCurrent } from './follows-current.ts'
 import { minuteLevels } from './minute-levels.ts'
 import type { RunProfile } from './run-profiles.ts'
+import { type Schedule, scheduleOf } from './timed-steps.ts'
 import { type Unexplained, unexplained } from './unexplained.ts'
 import { thinned } from './windows/held.ts'
 
@@ -19,6 +20,8 @@ export interface LogView {
   /** By thing: how far its runs lift the level, over the trip current; only where the log could see it. */
   readonly liftShare: ReadonlyMap<string, number>
   readonly unexplained: Unexplained | null
+  /** When the excursions that no named load accounts for come. */
+  readonly schedule: Schedule
   /** Whether leakage follows the group's load current whichever load carries it. */
   readonly followsCurrent: boolean | null
 }
@@ -50,15 +53,25 @@ export function logView(
     }
   }
   if (timeline.leakage === null || timeline.leakage.t.length < 100) {
-    return { minutes: null, tripMa, usualShare: null, liftShare, unexplained: null, followsCurrent: null }
+    return {
+      minutes: null,
+      tripMa,
+      usualShare: null,
+      liftShare,
+      unexplained: null,
+      schedule: { kind: 'none' },
+      followsCurrent: null,
+    }
   }
   const minutes = energisedMinutes(timeline, timeline.leakage)
+  const found = minutes.t.length < 60 ? null : unexplained(timeline, minutes, budget, tripMa)
   return {
     minutes,
     tripMa,
     usualShare: minutes.t.length === 0 ? null : quantile(thinned(minutes.v, 5_000), 0.5) / tripMa,
     liftShare,
-    unexplained: minutes.t.length < 60 ? null : unexplained(timeline, minutes, budget, tripMa),
+    unexplained: found,
+    schedule: found === null || found.follows !== null ? { kind: 'none' } : scheduleOf(timeline, found),
     followsCurrent: followsCurrent(timeline, minutes, budget),
   }
 }

@@ -30,6 +30,11 @@ const LOADS_ASSUMED = 1
  * stationary appliance of class I (3.5 mA; from memory).
  */
 const ABNORMAL_MA = 5.25
+const ABNORMAL_SHARE = 0.3
+/** A lift that can fire trips by itself, as a share of the trip current. */
+const LARGE_LIFT = 0.12
+/** How much likelier a cause a thing is that was seen to leak so much. */
+export const ABNORMAL = 12
 
 /** Usual level this near the trip current: many together. A lift below this share of it is a last step. */
 const NEAR = 0.75
@@ -55,11 +60,22 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
 
 function liftFactor(share: number | undefined, tripMa: number): number {
   if (share === undefined) return 1
-  if (share >= 0.3 && share * tripMa >= ABNORMAL_MA) return 12
+  if (share >= ABNORMAL_SHARE && share * tripMa >= ABNORMAL_MA) return ABNORMAL
   if (share >= 0.2) return 3
   if (share >= 0.12) return 1.5
   if (share >= 0.06) return 0.6
   return 0.3
+}
+
+/** Whether the excursions that no named load accounts for are higher than any sound appliance leaks. */
+export function isAbnormal(log: LogView): boolean {
+  const { unexplained, tripMa } = log
+  return unexplained !== null && unexplained.heightMa >= Math.max(ABNORMAL_MA, ABNORMAL_SHARE * tripMa)
+}
+
+/** How far the odds of a listed thing without a large lift fall where an unlisted one leaks heavily. */
+export function innocence(log: LogView, of: string): number {
+  return isAbnormal(log) && (log.liftShare.get(of) ?? 0) < LARGE_LIFT ? 0.3 : 1
 }
 
 /** Many together: likely only where the usual level stands near the trip current. */

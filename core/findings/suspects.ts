@@ -5,12 +5,21 @@ import type { Thing, Timeline } from '../timeline/timeline.ts'
 import { episodes } from './episodes.ts'
 import { type Candidate, type ExposureWindow, type LineUp, lineUp, type Standing } from './line-up.ts'
 import { type LogView, logView } from './log-view.ts'
-import { type CauseKind, courseRatio } from './marks.ts'
+import { type CauseKind, courseRatio, type Pace } from './marks.ts'
 import { type Preference, preferences } from './preference.ts'
-import { loadCurrentOdds, ODDS, rainOdds, standingOdds, thingOdds } from './prior-odds.ts'
+import {
+  ABNORMAL,
+  innocence,
+  isAbnormal,
+  loadCurrentOdds,
+  ODDS,
+  rainOdds,
+  standingOdds,
+  thingOdds,
+} from './prior-odds.ts'
 import { reasonsOf } from './reasons.ts'
 import type { RunProfile } from './run-profiles.ts'
-import { clockWindows, periodWindows } from './windows/clock-windows.ts'
+import { clockText, clockWindows, periodWindows } from './windows/clock-windows.ts'
 import { heldToTrips } from './windows/held-to-trips.ts'
 import { levelWindows } from './windows/level-windows.ts'
 import { sunWindows } from './windows/sun-windows.ts'
@@ -19,11 +28,18 @@ import { type Frame, HOUR_MS, marked, windowOf } from './windows/trip-share.ts'
 import { dryings, loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
 import { nameOf, rounded } from './words.ts'
 
+/** A device that opens too soon is fired by any sound load: how far the odds of all else fall then. */
+const UNDER_A_BAD_DEVICE = 0.001
+/** Odds of a device that a test, or its own trips, showed to open too soon: measured, not guessed. */
+const BAD_DEVICE = 600
+
 /** Below this a suspect with contrast is cleared; grades of methods.md §8. */
 const CLEARED = 0.02
 
 export interface Weighed {
   readonly suspects: Suspect[]
+  /** What the log says by itself. */
+  readonly log: LogView
   readonly frame: Frame
   readonly lineUp: LineUp
 }
@@ -44,8 +60,9 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const hours = totalMs(timeline.energised) / HOUR_MS
   const kept = episodes(timeline.trips)
   const frame: Frame = { timeline, hours, trips: kept }
+  const log = logView(timeline, measured.budget, measured.profiles, measured.headroom)
   const courses = kept.map((trip) => measured.trips[timeline.trips.indexOf(trip)]?.course ?? 'unseen')
-  const candidates = kept.length === 0 || hours <= 0 ? [] : candidatesOf(frame, courses, measured)
+  const candidates = kept.length === 0 || hours <= 0 ? [] : candidatesOf(frame, courses, measured, log)
   const weighed: LineUp =
     candidates.length === 0 ? { standings: [], none: 1, unexplained: 1 } : lineUp(hours, kept.length, candidates)
   const tested = weighed.standings.flatMap((s) => {
@@ -53,51 +70,70 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
     return top === undefined ? [] : [{ of: s.of, window: top.window }]
   })
   const prefer = new Map(preferences(Math.max(hours, 1e-9), kept.length, tested).map((p) => [p.of, p]))
-  const judged = weighed.standings.map((s) => judgedSuspect(frame, s, prefer.get(s.of), measured, weighed.standings))
+  const judged = weighed.standings.map((s) =>
+    judgedSuspect(frame, s, prefer.get(s.of), measured, weighed.standings, log),
+  )
   const seen = new Set(judged.map((s) => s.of))
   const unjudged = timeline.things.filter((t) => !seen.has(t.of)).map((t) => unjudgedSuspect(t, weighed.none))
   const none = noneSuspect(timeline, frame, weighed)
   const all = [...judged, ...unjudged, none]
   all.sort((a, b) => b.probability - a.probability || (a.of < b.of ? -1 : 1))
-  return { suspects: all, frame, lineUp: weighed }
+  return { suspects: all, log, frame, lineUp: weighed }
 }
 
-function candidatesOf(frame: Frame, courses: readonly TripFinding['course'][], measured: Measured): Candidate[] {
+function candidatesOf(
+  frame: Frame,
+  courses: readonly TripFinding['course'][],
+  measured: Measured,
+  log: LogView,
+): Candidate[] {
   const { timeline } = frame
-  const log = logView(timeline, measured.budget, measured.profiles, measured.headroom)
-  const interval = timeline.leakage === null ? Number.NaN : usualInterval(timeline.leakage)
-  const marks = (kind: CauseKind): Float64Array =>
-    Float64Array.from(courses, (course) => courseRatio(kind, course, Number.isNaN(interval) ? 1 : interval))
+  const interval = timeline.leakage === null ? 1 : usualInterval(timeline.leakage)
+  const marks = (kind: CauseKind, pace: Pace): Float64Array =>
+    Float64Array.from(courses, (course) => courseRatio(kind, pace, course, Number.isNaN(interval) ? 1 : interval))
   const list: Candidate[] = []
-  const add = (of: string, odds: number, kind: CauseKind, windows: readonly ExposureWindow[]): void => {
-    if (windows.length > 0 && odds > 0) list.push({ of, odds, windows: marked(windows, marks(kind)) })
-  }
   const tooSensitive = isTooSensitive(timeline, measured)
+  const add = (of: string, given: number, kind: CauseKind, windows: readonly ExposureWindow[]): void => {
+    const odds = tooSensitive && of !== 'device' && of !== 'supply' ? given * UNDER_A_BAD_DEVICE : given
+    if (windows.length === 0 || odds <= 0) return
+    // supply has one pace; every other cause is tried at both
+    const paced =
+      kind === 'supply'
+        ? marked(windows, marks(kind, 'at-once'), 1)
+        : [...marked(windows, marks(kind, 'at-once'), 0.5), ...marked(windows, marks(kind, 'visibly'), 0.5)]
+    list.push({ of, odds, windows: paced })
+  }
   const level = levelWindows(frame, log)
   const byThing = new Map(
     timeline.things.map((thing) => [thing.of, thingWindows(frame, heldToTrips(thing, frame.trips))]),
   )
   const isJudged = (of: string): boolean => (byThing.get(of)?.length ?? 0) > 0
-  for (const thing of timeline.things) {
-    const odds = thingOdds(timeline, thing, log, isJudged) * (tooSensitive ? 0.03 : 1)
-    add(thing.of, odds, 'load', byThing.get(thing.of) ?? [])
-  }
   const laws = dryings(frame, log.unexplained?.remainder ?? null)
-  const wet = rainWindows(frame, laws)
   const rain = rainOdds(timeline, log, laws)
-  add('rain', rain, 'weather', wet)
+  const unlisted = unlistedWindows(frame, log, rain > 2 * ODDS.rain)
+  for (const thing of timeline.things) {
+    const odds = thingOdds(timeline, thing, log, isJudged) * (unlisted.length > 0 ? innocence(log, thing.of) : 1)
+    add(thing.of, odds, 'local', byThing.get(thing.of) ?? [])
+  }
+  add('rain', rain, 'weather', rainWindows(frame, laws))
   add('temperature', ODDS.temperature, 'weather', temperatureWindows(frame))
-  add('clock', ODDS.clock, 'schedule', clockWindows(frame))
-  add('period', ODDS.period, 'schedule', periodWindows(frame))
-  add('sun', ODDS.sun, 'schedule', sunWindows(frame))
-  add('load-current', loadCurrentOdds(log), 'load-current', loadCurrentWindows(frame))
-  if (tooSensitive) add('device', 6, 'device', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
-  else add('standing', standingOdds(log, measured.headroom), 'standing', level)
+  // what comes by a schedule is named by it: the excursions' window goes to the clock or the period
+  const schedule = unlisted.length === 0 ? 'none' : log.schedule.kind
+  const weight = unlisted.length === 0 ? 1 : isAbnormal(log) ? ABNORMAL : 4
+  const clocked = schedule === 'clock' ? weight : 1
+  const periodic = schedule === 'period' ? weight : 1
+  const share = (windows: readonly ExposureWindow[], by: number): ExposureWindow[] =>
+    by > 1 ? [...unlisted, ...scaled(windows, 0.5)] : [...windows]
+  add('clock', ODDS.clock * clocked, 'local', share(clockWindows(frame), clocked))
+  add('period', ODDS.period * periodic, 'local', share(periodWindows(frame), periodic))
+  add('sun', ODDS.sun, 'local', sunWindows(frame))
+  add('load-current', loadCurrentOdds(log), 'local', loadCurrentWindows(frame))
+  if (tooSensitive) add('device', BAD_DEVICE, 'local', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
+  else add('standing', standingOdds(log, measured.headroom), 'local', level)
   add('supply', ODDS.supply, 'supply', always(frame, 'together with others', 1))
-  const seen = unlistedWindows(frame, log, rain > 2 * ODDS.rain)
-  add('unlisted', ODDS.unlisted * (seen.length > 0 ? 4 : 1), 'unlisted', [
-    ...seen,
-    ...always(frame, 'at any time', seen.length > 0 ? 0.5 : 1),
+  add('unlisted', ODDS.unlisted * (schedule === 'none' ? weight : 1), 'local', [
+    ...unlisted,
+    ...always(frame, 'at any time', unlisted.length > 0 ? 0.5 : 1),
   ])
   return list
 }
@@ -139,6 +175,7 @@ function judgedSuspect(
   preference: Preference | undefined,
   measured: Measured,
   all: readonly Standing[],
+  log: LogView,
 ): Suspect {
   const { timeline } = frame
   const probability = rounded(standing.probability)
@@ -160,8 +197,14 @@ function judgedSuspect(
     next: nextFor(timeline, standing.of, grade, same),
   }
   if (same.length > 0) suspect.sameAs = same
-  if (standing.of === 'clock' && top !== undefined) suspect.localTime = top.key.split('+')[0]!
-  if (standing.of === 'period' && top !== undefined) suspect.hours = Number.parseFloat(top.key)
+  const { schedule } = log
+  const bySteps = top?.key === 'unexplained'
+  if (standing.of === 'clock' && top !== undefined) {
+    suspect.localTime = bySteps && schedule.kind === 'clock' ? clockText(schedule.minute) : top.key.split('+')[0]!
+  }
+  if (standing.of === 'period' && top !== undefined) {
+    suspect.hours = bySteps && schedule.kind === 'period' ? rounded(schedule.hours) : Number.parseFloat(top.key)
+  }
   return suspect
 }
 

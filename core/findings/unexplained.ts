@@ -22,6 +22,8 @@ export interface Unexplained {
   readonly cutMa: number
   /** Time above it. */
   readonly excursions: Spans
+  /** Median height of the excursions over the usual remainder, mA; 0 without any. */
+  readonly heightMa: number
   /** How many excursions began apart from any trip. */
   readonly apart: number
   /** The named thing whose starts most excursions follow; null when there is none. */
@@ -53,13 +55,17 @@ export function unexplained(
   const usual = quantile(sample, 0.5)
   const cutMa = usual + Math.max(HIGH_SHARE * tripMa, 2 * (quantile(sample, 0.75) - usual))
   const found: [number, number][] = []
+  const heights: number[] = []
   let began = -1
   for (let k = 0; k <= v.length; k++) {
     const high = k < v.length && v[k]! > cutMa && contains(timeline.energised, minutes.t[k]!)
     const joined = began >= 0 && k < v.length && minutes.t[k]! - minutes.t[k - 1]! <= 3 * MINUTE_MS
     if (high && began < 0) began = k
     else if (began >= 0 && !(high && joined)) {
-      if (k - began >= LEAST_MINUTES) found.push([minutes.t[began]!, minutes.t[k - 1]! + MINUTE_MS])
+      if (k - began >= LEAST_MINUTES) {
+        found.push([minutes.t[began]!, minutes.t[k - 1]! + MINUTE_MS])
+        heights.push(quantile(v.subarray(began, k), 0.5) - usual)
+      }
       began = high ? k : -1
     }
   }
@@ -68,7 +74,8 @@ export function unexplained(
   const apart = starts.filter(
     (at) => !timeline.trips.some((trip) => trip.from >= at && trip.from - at < NEAR_TRIP_MS),
   ).length
-  return { remainder: { t: minutes.t, v }, cutMa, excursions, apart, follows: followed(timeline, starts) }
+  const heightMa = heights.length === 0 ? 0 : quantile(heights, 0.5)
+  return { remainder: { t: minutes.t, v }, cutMa, heightMa, excursions, apart, follows: followed(timeline, starts) }
 }
 
 /** The thing within a quarter of an hour of whose starts at least half of the excursions begin, well above chance. */

@@ -1,4 +1,5 @@
 import { localClock } from '../../timeline/local-clock.ts'
+import { energisedClock } from '../energised-clock.ts'
 import type { ExposureWindow } from '../line-up.ts'
 import { type Frame, HOUR_MS, MINUTE_MS } from './trip-share.ts'
 
@@ -56,33 +57,36 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
   const spanHours = (to - from) / HOUR_MS
   const longest = Math.min(240, spanHours / 3)
   if (frame.trips.length < LEAST_TRIPS_FOR_PERIOD || longest < 2) return []
-  const at = frame.trips.map((t) => ((t.from + t.to) / 2 - from) / HOUR_MS)
+  const middles = frame.trips.map((t) => (t.from + t.to) / 2)
+  // a timer behind the device stands still while it is open: both clocks are tried
+  const clocks = [middles.map((t) => (t - from) / HOUR_MS), middles.map(energisedClock(frame.timeline))]
   const windows: ExposureWindow[] = []
   const step = 0.04 / spanHours
   const steps = Math.ceil((1 - 1 / longest) / step)
-  const widthsPrior = 1 / PHASE_WIDTHS.length
-  for (let s = 0; s <= steps; s++) {
-    const frequency = 1 / longest + s * step
-    const hours = 1 / frequency
-    // whole fractions and multiples of a day belong to the clock
-    if (isDaily(hours, spanHours)) continue
-    for (const width of PHASE_WIDTHS) {
-      const phases = Math.round(2 / width)
-      for (let k = 0; k < phases; k++) {
-        const start = k / phases
-        let hits = 0
-        for (const t of at) if (fraction(t * frequency - start) < width) hits++
-        // a window with no more trips than its share is no evidence for the period; its prior is kept all the same
-        if (hits < 3 || hits < 2 * width * at.length) continue
-        const inside = Float64Array.from(at, (t) => (fraction(t * frequency - start) < width ? 1 : 0))
-        windows.push({
-          key: `${hours.toFixed(3)}h@${start.toFixed(2)}+${width}`,
-          words: `in the same ${Math.round(width * 100)} % of a period of ${hours.toFixed(1)} h`,
-          prior: widthsPrior / ((steps + 1) * phases),
-          hours: frame.hours * width,
-          inside,
-          weights: inside,
-        })
+  for (const [c, at] of clocks.entries()) {
+    for (let s = 0; s <= steps; s++) {
+      const frequency = 1 / longest + s * step
+      const hours = 1 / frequency
+      // whole multiples of a day by the clock on the wall belong to the clock
+      if (c === 0 && isDaily(hours, spanHours)) continue
+      for (const width of PHASE_WIDTHS) {
+        const phases = Math.round(2 / width)
+        for (let k = 0; k < phases; k++) {
+          const start = k / phases
+          let hits = 0
+          for (const t of at) if (fraction(t * frequency - start) < width) hits++
+          // a window with no more trips than its share is no evidence for the period; its prior is kept all the same
+          if (hits < 3 || hits < 3 * width * at.length) continue
+          const inside = Float64Array.from(at, (t) => (fraction(t * frequency - start) < width ? 1 : 0))
+          windows.push({
+            key: `${hours.toFixed(3)}h@${start.toFixed(2)}+${width}${c === 1 ? ' under supply' : ''}`,
+            words: `in the same ${Math.round(width * 100)} % of a period of ${hours.toFixed(1)} h${c === 1 ? ' under supply' : ''}`,
+            prior: 1 / (clocks.length * PHASE_WIDTHS.length * (steps + 1) * phases),
+            hours: frame.hours * width,
+            inside,
+            weights: inside,
+          })
+        }
       }
     }
   }

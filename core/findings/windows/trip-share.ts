@@ -66,7 +66,9 @@ export function normalised(windows: readonly (ExposureWindow | null)[]): Exposur
   return kept.map((w) => ({ ...w, prior: w.prior / sum }))
 }
 
-/** The same windows with each trip's weight multiplied by what the leakage before it says for this suspect. */
-export function marked(windows: readonly ExposureWindow[], marks: Float64Array): ExposureWindow[] {
-  return windows.map((w) => ({ ...w, weights: w.inside.map((share, i) => share * marks[i]!) }))
+/**
+ * The same windows with each trip's weight multiplied by what the leakage before it says, and their priors by `prior`.
+ */
+export function marked(windows: readonly ExposureWindow[], marks: Float64Array, prior: number): ExposureWindow[] {
+  return windows.map((w) => ({ ...w, prior: w.prior * prior, weights: w.inside.map((share, i) => share * marks[i]!) }))
 }
