@@ -1,6 +1,6 @@
 import type { BudgetLine, Findings, Headroom, Suspect } from '../contract/findings.ts'
 import type { Timeline } from '../timeline/timeline.ts'
-import { countOf, current, duration, nameOf, sentence } from './words.ts'
+import { countOf, current, duration, figure, nameOf, sentence } from './words.ts'
 
 /** Fewer trips than this prove almost nothing, whatever the odds say. */
 const FEW_TRIPS = 4
@@ -41,7 +41,7 @@ export function answer(
         ? 'Probably'
         : `${over}: no clear answer yet. Ahead is`
   const name = nameOf(timeline, first.of)
-  const reason = first.because[0]?.text
+  const reason = shortReason(first)
   const line = budget.find((b) => b.of === first.of)
   const adds =
     line?.ma !== null && line?.ma !== undefined && line.ma >= 0.05
@@ -49,10 +49,7 @@ export function answer(
       : ''
   const few = trips < FEW_TRIPS ? ` With ${countOf(trips, 'trip')} almost nothing is proven.` : ''
   return {
-    text: join(
-      `${lead} ${name} (${odds(first.probability)})${reason === undefined ? '.' : `: ${lower(reason)}`}`,
-      `${room}${adds}${few}`,
-    ),
+    text: join(`${lead} ${name} (${odds(first.probability)})${reason}`, `${room}${adds}${few}`),
     sureness: first.grade,
   }
 }
@@ -68,8 +65,13 @@ function odds(p: number): string {
   return p.toFixed(2)
 }
 
-function lower(text: string): string {
-  return /^[A-Z][a-z]/.test(text) ? text.charAt(0).toLowerCase() + text.slice(1) : text
+/** `: 9 of 11 trips within 3 minutes of its start, against 0.7 by chance.`; only a full stop when there is no such count. */
+function shortReason(suspect: Suspect): string {
+  const figures = suspect.because[0]?.figures
+  if (figures === undefined || typeof figures.when !== 'string' || figures.window === 'any') return '.'
+  const { tripsInside, trips, expectedInside, when } = figures
+  if (typeof tripsInside !== 'number' || typeof expectedInside !== 'number') return '.'
+  return `: ${figure(tripsInside)} of ${String(trips)} trips ${when}, against ${Number(expectedInside.toPrecision(2))} by chance.`
 }
 
 function join(a: string, b: string): string {

@@ -3,17 +3,20 @@ import { writeInstant } from '../contract/primitives.ts'
 import { buildTimeline } from '../timeline/build-timeline.ts'
 import type { Evidence } from '../timeline/evidence.ts'
 import { totalMs } from '../timeline/spans.ts'
+import type { Timeline } from '../timeline/timeline.ts'
 import { answer } from './answer.ts'
 import { budget } from './budget.ts'
 import { coverage } from './coverage.ts'
 import { headroom } from './headroom.ts'
 import { nextSteps } from './isolation.ts'
+import { withLocalTimes } from './local-text.ts'
 import { patterns } from './patterns.ts'
 import { proof } from './proof.ts'
 import { runProfiles } from './run-profiles.ts'
 import { suspects } from './suspects.ts'
 import { timedSteps } from './timed-steps.ts'
 import { tripFindings } from './trips.ts'
+import { countOf, sentence } from './words.ts'
 
 /** Raised whenever the same evidence may give other findings than before; part of every cache key. */
 export const FINDINGS_VERSION = 1
@@ -44,6 +47,18 @@ export function findings(evidence: Evidence): Findings {
     patterns: { ...patterns(timeline), timedSteps: timedSteps(weighed.log.unexplained, weighed.log.schedule) },
     next: nextSteps(timeline, hours, weighed.suspects),
     proof: proof(timeline),
-    notes: [...timeline.notes],
+    notes: notesOf(timeline, weighed.frame.trips.length),
   }
+}
+
+/** What was merged, narrowed or set aside, times on the site's clock. */
+function notesOf(timeline: Timeline, counted: number): string[] {
+  const notes = timeline.notes.map((note) => withLocalTimes(note, timeline.sheet.timeZone))
+  const repeats = timeline.trips.length - counted
+  if (repeats > 0) {
+    notes.unshift(
+      `${sentence(countOf(repeats, 'trip'))} came within a quarter of an hour of closing the device again: ${repeats === 1 ? 'it counts' : 'they count'} as one with the trip before.`,
+    )
+  }
+  return notes
 }

@@ -56,6 +56,7 @@ function preferenceReason(p: Preference, grade: Grade, leader: string | null): R
       p: rounded(p.p),
       pAdjusted: rounded(p.pAdjusted),
       window: p.window.key,
+      when: p.window.words,
     },
   }
 }
