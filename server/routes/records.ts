@@ -16,7 +16,7 @@ import {
 import { outagesSpan, overlapNotes } from '../intake/overlaps.ts'
 import { changedRecord, MAX_RECORDS_PER_BODY, RECORD_IN, takeRecords } from '../intake/records.ts'
 import { ProblemError } from '../plugins/problem-error.ts'
-import type { StoredRecord } from '../store/port.ts'
+import type { Page, StoredRecord } from '../store/port.ts'
 import { SiteAndIdParams, SiteParams } from './params.ts'
 import { inOrder, OUT_OF_ORDER, pageFields, spanFields } from './query.ts'
 import { actOf, type Rooms, siteOf } from './shared.ts'
@@ -185,11 +185,21 @@ export function recordRoutes<K extends RecordKind>(
   async function notesOn(site: string, trips: readonly Trip[], ids: readonly string[]): Promise<string[]> {
     const span = outagesSpan(trips)
     if (span === null) return []
-    const { items } = await store.records(site, 'trip', { ...span, limit: 1_000 })
+    const items: StoredRecord<'trip'>[] = []
+    let after: string | undefined
+    do {
+      const query = { from: span.from - LONGEST_OUTAGE_MS, to: span.to, after, limit: 1_000 }
+      const page: Page<StoredRecord<'trip'>> = await store.records(site, 'trip', query)
+      items.push(...page.items)
+      after = page.next ?? undefined
+    } while (after !== undefined && items.length < MOST_COMPARED)
     return overlapNotes(items, new Set(ids))
   }
 }
 
+/** A trip is listed by when it happened; so far back one is asked for that may still last. */
+const LONGEST_OUTAGE_MS = 31 * 86_400_000
+const MOST_COMPARED = 20_000
 const CHANGE = 'Any of the fields as they are posted; null takes one away.'
 
 function noSuchRecord(): ProblemError {

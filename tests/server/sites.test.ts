@@ -46,7 +46,7 @@ describe('site sheets', () => {
     const seen: string[] = []
     let path: string | undefined = '/sites?search=paged&limit=2'
     while (path !== undefined) {
-      const page = (await h.call('GET', path)).json<{ items: { id: string }[]; next: string | null }>()
+      const page: { items: { id: string }[]; next: string | null } = (await h.call('GET', path)).json()
       expect(page.items.length).toBeLessThanOrEqual(2)
       seen.push(...page.items.map(({ id }) => id))
       path = page.next === null ? undefined : `/sites?search=paged&limit=2&after=${encodeURIComponent(page.next)}`
