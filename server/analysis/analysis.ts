@@ -42,7 +42,6 @@ export function openAnalysis(options: AnalysisOptions): Analysis {
     workerData: { file },
     minThreads: 0,
     maxThreads: workers,
-    maxQueue: queue,
     idleTimeout: 60_000,
     recordTiming: false,
   })
@@ -58,15 +57,19 @@ export function openAnalysis(options: AnalysisOptions): Analysis {
     return { body: told.body, tag }
   }
 
+  let asked = 0
   async function ask(task: Task): Promise<Told> {
+    if (asked >= workers + queue) throw new TooBusy('Too many analyses are waiting; ask again in a moment.')
+    asked++
     try {
       return await pool.run(task, { signal: AbortSignal.timeout(timeoutMs) })
     } catch (error) {
       if (!(error instanceof Error)) throw error
       if (error.name === 'AbortError') throw new TooBusy('The analysis took too long; ask for a shorter span.')
-      if (/queue/i.test(error.message)) throw new TooBusy('Too many analyses are waiting; ask again in a moment.')
       if (/terminat/i.test(error.message)) throw new StoreError('closed', 'The server is shutting down.')
       throw error
+    } finally {
+      asked--
     }
   }
 

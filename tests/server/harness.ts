@@ -57,6 +57,7 @@ export interface Harness {
   readonly app: FastifyInstance
   readonly store: Store
   readonly analysis: Analysis
+  readonly dataFile: string
   /** What the app takes for now; tests move it. */
   readonly clock: { now: number }
   /** Calls with the owner key, or the key given (null: none). */
@@ -101,6 +102,7 @@ export async function startHarness(wrap: (store: Store) => Store = (store) => st
     app,
     store,
     analysis,
+    dataFile: file,
     clock,
     call,
     makeSite: async (sheet = BAKERY) => (await call('POST', '/sites', sheet)).json<{ id: string }>().id,
