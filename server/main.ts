@@ -1,3 +1,4 @@
+import { demo, type PostDemo } from './demo.ts'
 import { type Serving, serve } from './serve.ts'
 import { readSettings, SettingsError } from './settings.ts'
 import { StoreError } from './store/port.ts'
@@ -6,10 +7,25 @@ import { StoreError } from './store/port.ts'
 async function main(): Promise<void> {
   const settings = readSettings(process.argv.slice(2))
   const stopping = signalled()
+  if (settings.verb === 'demo') {
+    const serving = await Promise.race([demo(settings, await demoPoster(), say), stopping])
+    await stopping
+    await serving?.stop()
+    return
+  }
   const serving = await serve(settings)
   tell(serving)
   await stopping
   await serving.stop()
+}
+
+/** Loaded on demand: a server at work has no use for the simulator behind the demo. */
+async function demoPoster(): Promise<PostDemo> {
+  const extension = import.meta.url.endsWith('.ts') ? 'ts' : 'js'
+  const { postDemo } = (await import(new URL(`./demo/post-demo.${extension}`, import.meta.url).href)) as {
+    readonly postDemo: PostDemo
+  }
+  return postDemo
 }
 
 function tell({ url, madeKey, warnings }: Serving): void {
