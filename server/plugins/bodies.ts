@@ -24,7 +24,7 @@ export const bodiesPlugin = fp(
       else parse(request, body, done)
     })
     app.addHook('preValidation', async (request) => {
-      const awaited = request.method === 'POST' || request.method === 'PATCH'
+      const awaited = !request.is404 && (request.method === 'POST' || request.method === 'PATCH')
       if (awaited && request.body === undefined) {
         throw new ProblemError('malformed-request', 'This call needs a JSON body with its Content-Type.')
       }

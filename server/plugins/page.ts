@@ -23,9 +23,8 @@ export const pagePlugin = fp<PageOptions>(
     await app.register(fastifyStatic, { root: folder, serve: false, index: false })
     app.get('/*', { config: { access: 'open' }, schema: { hide: true } }, async (request, reply) => {
       const path = (request.params as { readonly '*': string })['*']
-      if (path === 'api' || path.startsWith('api/')) {
-        throw new ProblemError('not-found', 'There is nothing under this path.')
-      }
+      // What the API does not have is for it to say.
+      if (path === 'api' || path.startsWith('api/')) return reply.callNotFound()
       if (isFile(path)) {
         if (!existsSync(join(folder, path))) throw new ProblemError('not-found', 'There is no such file.')
         // The names of built files carry a hash of what is in them.

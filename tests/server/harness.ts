@@ -73,8 +73,9 @@ export interface CallOptions {
   readonly cookies?: Readonly<Record<string, string>>
 }
 
-/** @param wrap stands between the app and its store, to let single calls fail */
-export async function startHarness(wrap: (store: Store) => Store = (store) => store): Promise<Harness> {
+/** @param wrap stands between the app and its store, to let single calls fail
+ * @param page folder of a built page; none when left out */
+export async function startHarness(wrap: (store: Store) => Store = (store) => store, page?: string): Promise<Harness> {
   const folder = mkdtempSync(join(tmpdir(), 'leaktide-server-'))
   const file = join(folder, 'leaktide.db')
   const store = await openStore(file)
@@ -82,7 +83,7 @@ export async function startHarness(wrap: (store: Store) => Store = (store) => st
   const now = (): number => clock.now
   await ensureOwnerKey(store, OWNER_KEY, clock.now)
   const analysis = openAnalysis({ store, file, now })
-  const app = await createApp({ store: wrap(store), analysis, now, page: join(folder, 'no-page') })
+  const app = await createApp({ store: wrap(store), analysis, now, page: page ?? join(folder, 'no-page') })
 
   const call: Harness['call'] = (method, path, body, { key = OWNER_KEY, headers = {}, cookies = {} } = {}) => {
     const raw = typeof body === 'string' || Buffer.isBuffer(body)
