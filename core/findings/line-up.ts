@@ -47,6 +47,9 @@ export interface LineUp {
  */
 const LEAST_DOUBT = 0.01
 
+/** Each cause beyond the first is so much rarer still: two faults at once are no coincidence of two ordinary ones. */
+const EXTRA_CAUSE = 0.15
+
 /** How many windows of a suspect go on to sets of two and three, and how many suspects. */
 const WINDOWS_IN_PAIRS = 3
 const WINDOWS_IN_TRIPLES = 2
@@ -81,7 +84,7 @@ export function lineUp(hours: number, trips: number, candidates: readonly Candid
   const sets: Weighed[] = [{ members: [], windows: [], logWeight: empty.log, marginal: empty }]
   const add = (members: readonly number[], windows: readonly ExposureWindow[]): number => {
     const m = marginal(hours, trips, windows)
-    let logWeight = m.log
+    let logWeight = m.log + Math.max(0, members.length - 1) * Math.log(EXTRA_CAUSE)
     for (const c of members) logWeight += Math.log(candidates[c]!.odds)
     for (const w of windows) logWeight += Math.log(w.prior)
     sets.push({ members, windows, logWeight, marginal: m })

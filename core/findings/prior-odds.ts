@@ -36,9 +36,10 @@ const LARGE_LIFT = 0.12
 /** How much likelier a cause a thing is that was seen to leak so much. */
 export const ABNORMAL = 12
 
-/** Usual level this near the trip current: many together. A lift below this share of it is a last step. */
-const NEAR = 0.75
-const LAST_STEP = 0.12
+/** Usual level this near the trip current: many together. */
+export const NEAR = 0.75
+/** What a sound appliance leaks at most, with some room: 3.5 mA of IEC 60335-1 clause 13.2 (from memory). */
+export const SOUND_MA = 4
 
 /**
  * Odds of a circuit or load. A circuit stands in for those of its loads that nothing can be said about. The log then
@@ -53,9 +54,10 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
     odds += silent * ODDS.load
   }
   const lift = log.liftShare.get(thing.of)
-  // where the usual level is near the trip current anyway, a small step is the last one, not the cause
-  const small = log.usualShare !== null && log.usualShare >= NEAR && lift !== undefined && lift < LAST_STEP ? 0.25 : 1
-  return odds * liftFactor(lift, log.tripMa) * small * (log.followsCurrent === true ? 0.15 : 1)
+  // where the usual level is near the trip current anyway, what a sound appliance leaks is the last step, not the cause
+  const near = log.usualShare !== null && log.usualShare >= NEAR
+  const small = near && lift !== undefined && lift * log.tripMa < SOUND_MA ? 0.02 : 1
+  return odds * liftFactor(lift, log.tripMa) * small * (log.followsCurrent === true ? 0.02 : 1)
 }
 
 function liftFactor(share: number | undefined, tripMa: number): number {
@@ -81,7 +83,7 @@ export function innocence(log: LogView, of: string): number {
 /** Many together: likely only where the usual level stands near the trip current. */
 export function standingOdds(log: LogView, headroom: Headroom): number {
   const share = log.usualShare
-  if (share === null) return 0
+  if (share === null || log.followsCurrent === true) return 0
   const sure = headroom.tripMa.basis === 'limits' ? 0.5 : 1
   const factor = share >= 0.8 ? 5 : share >= 0.7 ? 2 : share >= 0.6 ? 0.4 : 0
   return ODDS.standing * factor ** sure
@@ -94,10 +96,22 @@ export function rainOdds(timeline: Timeline, log: LogView, laws: readonly Drying
   return ODDS.rain * (lift >= 0.12 ? 5 : lift >= 0.05 ? 1.5 : 0.3)
 }
 
+function bestDrying(laws: readonly Drying[]): Drying {
+  return laws.reduce((a, b) => (b.correlation > a.correlation ? b : a))
+}
+
+/** Wet time by the drying law that fits best, above a tenth of its peak; null where the leakage does not rise with rain. */
+export function wetTime(rain: number, laws: readonly Drying[]): Float64Array | null {
+  if (rain <= 2 * ODDS.rain || laws.length === 0) return null
+  const { wetness, lag } = bestDrying(laws)
+  const peak = wetness.v.reduce((a, b) => Math.max(a, b), 0)
+  return heldAbove(wetness, 0.1 * peak, true, lag * HOUR_MS).inside
+}
+
 /** Level in the wettest tenth less that in dry hours, over the trip current, by the drying law that fits best. */
 function wetLiftShare(timeline: Timeline, log: LogView, laws: readonly Drying[]): number | null {
   if (log.unexplained === null || laws.length === 0) return null
-  const best = laws.reduce((a, b) => (b.correlation > a.correlation ? b : a))
+  const best = bestDrying(laws)
   if (best.correlation < 0.2) return 0
   const { remainder } = log.unexplained
   const peak = best.wetness.v.reduce((a, b) => Math.max(a, b), 0)

@@ -16,6 +16,7 @@ import {
   rainOdds,
   standingOdds,
   thingOdds,
+  wetTime,
 } from './prior-odds.ts'
 import { reasonsOf } from './reasons.ts'
 import type { RunProfile } from './run-profiles.ts'
@@ -103,14 +104,15 @@ function candidatesOf(
         : [...marked(windows, marks(kind, 'at-once'), 0.5), ...marked(windows, marks(kind, 'visibly'), 0.5)]
     list.push({ of, odds, windows: paced })
   }
-  const level = levelWindows(frame, log)
   const byThing = new Map(
     timeline.things.map((thing) => [thing.of, thingWindows(frame, heldToTrips(thing, frame.trips))]),
   )
   const isJudged = (of: string): boolean => (byThing.get(of)?.length ?? 0) > 0
   const laws = dryings(frame, log.unexplained?.remainder ?? null)
   const rain = rainOdds(timeline, log, laws)
-  const unlisted = unlistedWindows(frame, log, rain > 2 * ODDS.rain)
+  const wet = wetTime(rain, laws)
+  const level = levelWindows(frame, log, wet)
+  const unlisted = unlistedWindows(frame, log, wet !== null)
   for (const thing of timeline.things) {
     const odds = thingOdds(timeline, thing, log, isJudged) * (unlisted.length > 0 ? innocence(log, thing.of) : 1)
     add(thing.of, odds, 'local', byThing.get(thing.of) ?? [])
