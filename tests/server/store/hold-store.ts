@@ -1,6 +1,6 @@
 // A process that opens the store named on its command line, stores one reading and holds on until it is killed.
 import { openStore } from '../../../server/store/sqlite/index.ts'
-import { ACT, bakery, batch, T0 } from './port-suite.ts'
+import { ACT, bakery, batch, T0 } from './bakery.ts'
 
 async function work(): Promise<void> {
   const store = await openStore(process.argv[2]!)

@@ -9,7 +9,7 @@ import { afterAll, afterEach, describe, expect, it } from 'vitest'
 import type { Store, StoreReader } from '../../../server/store/port.ts'
 import { openReader, openStore } from '../../../server/store/sqlite/index.ts'
 import { migrationsFolder } from '../../../server/store/sqlite/migrate.ts'
-import { ACT, bakery, batch, rowsOf, T0 } from './port-suite.ts'
+import { ACT, bakery, batch, rowsOf, T0 } from './bakery.ts'
 
 const HOUR = 3_600_000
 const folder = mkdtempSync(join(tmpdir(), 'leaktide-faults-'))
