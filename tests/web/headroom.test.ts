@@ -4,7 +4,7 @@ import type { BudgetLine, Headroom } from '../../core/contract/findings.ts'
 import { budgetOf, remaining } from '../../web/headroom/parts.ts'
 
 const HEADROOM: Headroom = Object.freeze({
-  tripMa: { value: 23.5, low: 22, high: 24, basis: 'ramp-tests' },
+  tripMa: { value: 23.5, low: 22, high: 24, basis: 'ramp-tests' as const },
   standingMa: { p5: 9, p50: 12, p95: 18, max: 22 },
   shareOfRating: 0.4,
   advisedShare: 0.3,
