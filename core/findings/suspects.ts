@@ -34,6 +34,9 @@ const UNDER_A_BAD_DEVICE = 0.001
 /** Odds of a device that a test, or its own trips, showed to open too soon: measured, not guessed. */
 const BAD_DEVICE = 600
 
+/** Times of people and loggers differ by this much. */
+const TOGETHER_MS = 60_000
+
 /** Below this a suspect with contrast is cleared; grades of methods.md §8. */
 const CLEARED = 0.02
 
@@ -132,7 +135,7 @@ function candidatesOf(
   add('load-current', loadCurrentOdds(log), 'local', loadCurrentWindows(frame))
   if (tooSensitive) add('device', BAD_DEVICE, 'local', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
   else add('standing', standingOdds(log, measured.headroom), 'local', level)
-  add('supply', ODDS.supply, 'supply', always(frame, 'together with others', 1))
+  add('supply', ODDS.supply, 'supply', supplyWindows(frame))
   add('unlisted', ODDS.unlisted * (schedule === 'none' ? weight : 1), 'local', [
     ...unlisted,
     ...always(frame, 'at any time', unlisted.length > 0 ? 0.5 : 1),
@@ -143,6 +146,20 @@ function candidatesOf(
 function always(frame: Frame, words: string, prior: number): ExposureWindow[] {
   const inside = new Float64Array(frame.trips.length).fill(1)
   return [{ key: 'any', words, prior, hours: frame.hours, inside, weights: inside }]
+}
+
+/**
+ * When other devices opened: as exactly as their trips are known, so that an interval of hours that holds a trip of
+ * this one says little and an instant much.
+ */
+function supplyWindows(frame: Frame): ExposureWindow[] {
+  const { from, to, otherTrips } = frame.timeline
+  const spans = spansOf(otherTrips.map((t) => [t.from - TOGETHER_MS, t.to + TOGETHER_MS] as const))
+  const words = 'when another device opened too, as far as its trips are known'
+  const together = windowOf(frame, 'together', words, 0.5, spans, spansOf([[from, to]]))
+  return together === null
+    ? always(frame, 'together with others', 1)
+    : [together, ...always(frame, 'together with others', 0.5)]
 }
 
 function scaled(windows: readonly ExposureWindow[], by: number): ExposureWindow[] {
