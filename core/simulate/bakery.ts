@@ -93,6 +93,7 @@ function loggerFrom(startMs: number): Logger {
     clockMs: 0,
     clockMsPerDay: 0,
     statesMs: 10_000,
+    statesOnChange: true,
     loadCurrent: true,
     weather: true,
   }

@@ -12,6 +12,8 @@ const WEEK = 7 * 86_400_000
 /** The group at one instant; the same object each time, so copy what is kept. */
 export interface Moment {
   t: number
+  /** At the end of a step; else between two, when only states changed. */
+  whole: boolean
   closed: boolean
   /** The group's leakage, mA; 0 while open. */
   g: number
@@ -73,7 +75,7 @@ export function runDevice(rcd: RcdPlan, site: RunSite, watch: (moment: Moment) =
   const drift = wander(rcd, from, to, seed)
   const flicker = draws(seed, `flicker ${rcd.ref}`)
   const surges = surgesOf(rcd, site)
-  const moment: Moment = { t: from, closed: true, g: 0, b: 0, amps: 0, on: new Uint8Array(loads.length) }
+  const moment: Moment = { t: from, whole: true, closed: true, g: 0, b: 0, amps: 0, on: new Uint8Array(loads.length) }
   const trips: TrueTrip[] = []
   let opensUntil = Number.NEGATIVE_INFINITY
   let lastClosed = from
@@ -125,7 +127,7 @@ export function runDevice(rcd: RcdPlan, site: RunSite, watch: (moment: Moment) =
       surge++
     }
     if (by !== null && t > from) {
-      const at = Math.round(Math.max(lastClosed + 40, t - flicker.uniform() * dt))
+      const at = Math.round(Math.max(lastClosed + 40, t - flicker.uniform() * (dt - 50)))
       streak = at - lastClosed < 10 * MINUTE && trips.length > 0 ? streak + 1 : 0
       const running = loads.filter((_, k) => moment.on[k] === 1).map((load) => `load:${load.plan.ref}`)
       opensUntil = Math.max(at + dt, site.keeper.restoredAt(at, streak))
@@ -139,9 +141,16 @@ export function runDevice(rcd: RcdPlan, site: RunSite, watch: (moment: Moment) =
         faults: faultsNow(rcd, loads, circuits, minute, amps),
         running,
       })
+      // What switched on within this step ran, if only for a moment: states are told as they change.
+      moment.t = at - 20
+      moment.whole = false
+      watch(moment)
       moment.on.fill(0)
       for (const load of loads) load.interrupt()
-      Object.assign(moment, { closed: false, g: 0, b: 0, amps: 0 })
+      Object.assign(moment, { t: at, closed: false, g: 0, b: 0, amps: 0 })
+      watch(moment)
+      moment.t = t
+      moment.whole = true
     }
     watch(moment)
   }

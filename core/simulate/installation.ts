@@ -133,6 +133,8 @@ export interface Logger {
   readonly clockMsPerDay: number
   /** How often states of loads are written, ms. */
   readonly statesMs: number
+  /** Whether a state is also written as it changes. */
+  readonly statesOnChange: boolean
   readonly loadCurrent: boolean
   readonly weather: boolean
 }

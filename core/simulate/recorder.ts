@@ -12,7 +12,9 @@ class Column {
   private v = new Float64Array(1_024)
   private n = 0
 
+  /** A second value at the same time is left out. */
   push(t: number, v: number): void {
+    if (this.n > 0 && t <= this.t[this.n - 1]!) return
     if (this.n === this.t.length) {
       const grow = (old: Float64Array<ArrayBuffer>): Float64Array<ArrayBuffer> => {
         const wider = new Float64Array(2 * old.length)
@@ -64,24 +66,32 @@ export function recorderOf(
   const leakage = new Column()
   const amps = new Column()
   const states = channels.states.map((ref) => (ref === null ? null : new Column()))
+  const before = new Uint8Array(states.length)
   let next = from
   let nextStates = from
   return {
     take(moment) {
-      const { t } = moment
-      if (t < next && t < nextStates) return
-      const blind = logger.gaps.some(([a, b]) => t >= a && t < b)
+      const { t, whole } = moment
+      const reads = whole && t >= next
+      const beats = whole && t >= nextStates
+      const changes = logger.statesOnChange && moment.on.some((on, k) => on !== before[k])
+      if (!reads && !beats && !changes) return
+      if (reads) next += logger.intervalMs
+      if (beats) nextStates += logger.statesMs
       const stamp = Math.round(t + logger.clockMs + (logger.clockMsPerDay * (t - from)) / DAY)
-      if (t >= next) {
-        next += logger.intervalMs
+      if (logger.gaps.some(([a, b]) => t >= a && t < b)) return
+      if (reads) {
         const read = gain * magnitude(moment) + random.normal(0, noise)
         const clipped = Math.min(logger.fullScaleMa, Math.max(0, read))
-        if (!blind) leakage.push(stamp, Math.round(clipped * places) / places)
-        if (!blind && channels.loadCurrent !== null) amps.push(stamp, Math.round(moment.amps * 100) / 100)
+        leakage.push(stamp, Math.round(clipped * places) / places)
+        if (channels.loadCurrent !== null) amps.push(stamp, Math.round(moment.amps * 100) / 100)
       }
-      if (t >= nextStates) {
-        nextStates += logger.statesMs
-        if (!blind) for (let k = 0; k < states.length; k++) states[k]?.push(stamp, moment.on[k]!)
+      if (beats || changes) {
+        for (let k = 0; k < states.length; k++) {
+          const on = moment.on[k]!
+          if (beats || on !== before[k]) states[k]?.push(stamp, on)
+          before[k] = on
+        }
       }
     },
     series() {

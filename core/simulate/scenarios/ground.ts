@@ -128,6 +128,7 @@ function drawLogger(intervalMs: number, random: Draws): Logger {
     clockMs: 0,
     clockMsPerDay: 0,
     statesMs: 60_000,
+    statesOnChange: true,
     loadCurrent: random.chance(0.4),
     weather: random.chance(0.7),
   }

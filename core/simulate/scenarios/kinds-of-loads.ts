@@ -66,7 +66,7 @@ export function threeTrips(seed: number): Simulated {
   return loadScenario(seed, { kind: 'three-trips', fault: 'when-on', trips: [3, 3] })
 }
 
-/** A load leaks when on; the logger reads once a minute and was away for some hours, several times. */
+/** A load leaks when on; the logger reads once a minute, states too, and was away for some hours, several times. */
 export function slowLoggerWithGaps(seed: number): Simulated {
   return loadScenario(seed, {
     kind: 'slow-logger-with-gaps',
@@ -74,6 +74,7 @@ export function slowLoggerWithGaps(seed: number): Simulated {
     wish: { intervalMs: 60_000 },
     logger: (logger, ground, random) => ({
       ...logger,
+      statesOnChange: false,
       gaps: Array.from({ length: 2 + random.integer(3) }, () => {
         const start = ground.from + random.uniform() * (ground.to - ground.from)
         return [start, start + random.between(3, 30) * HOUR] as const
