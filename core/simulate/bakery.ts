@@ -1,4 +1,5 @@
 import type { SiteTest } from '../contract/records.ts'
+import { localClock } from '../timeline/local-clock.ts'
 import type { CircuitPlan, Installation, LoadPlan, Logger, People } from './installation.ts'
 import { simulate } from './simulate.ts'
 import type { Simulated } from './simulated.ts'
@@ -9,6 +10,7 @@ const DAY = 24 * HOUR
 
 /** The seed of the recorded week; every number of it follows. */
 const SEED = 61
+const TIME_ZONE = 'Europe/Vienna'
 
 /** Hours of the day at which a bakehouse works: from two in the morning to noon. */
 const BAKING = [1, 2, 9, 10, 10, 10, 9, 7, 6, 5, 4, 3, 2, 1, 0, 0, 0, 0, 0, 0, 0, 0, 0, 0]
@@ -20,19 +22,21 @@ function load(plan: Omit<LoadPlan, 'listed' | 'monitored' | 'resumes'> & Partial
 }
 
 /**
- * One week of a village bakery, beginning at `startMs` (local midnight of a Monday reads best), always the same. Device A
+ * One week of a village bakery, from the local midnight at or before `startMs` on; but for summer time always the same. Device A
  * feeds the bakehouse and opens at about 23 mA: proving cabinet and deck ovens with large filters, the mixer, and the walk-in freezer whose defrost
  * heater leaks as it warms, every eight hours or so: the cause. Device B feeds the shop: sign lights on a photocell and an outdoor
  * socket that suffers in rain. The baker is sure that it is the mixer.
  */
 export function bakeryWeek(startMs: number): Simulated {
-  const to = startMs + 7 * DAY
+  const clock = localClock(TIME_ZONE)
+  const from = clock.day(clock.dayNumber(startMs)).from
+  const to = from + 7 * DAY
   const installation: Installation = {
     name: 'Village bakery',
-    timeZone: 'Europe/Vienna',
+    timeZone: TIME_ZONE,
     latitude: 47.3,
     longitude: 13.4,
-    weather: twoWetDays(startMs),
+    weather: twoWetDays(from),
     sharedSurgesPerWeek: 0,
     rcds: [
       {
@@ -57,17 +61,17 @@ export function bakeryWeek(startMs: number): Simulated {
       },
     ],
     // Thursday nine to Friday nine: the electrician's first guess.
-    isolating: [{ of: 'circuit:4', from: startMs + 3 * DAY + 9 * HOUR, to: startMs + 4 * DAY + 9 * HOUR, told: true }],
+    isolating: [{ of: 'circuit:4', from: from + 3 * DAY + 9 * HOUR, to: from + 4 * DAY + 9 * HOUR, told: true }],
   }
   return simulate({
     installation,
     people: PEOPLE,
-    logger: loggerFrom(startMs),
-    from: startMs,
+    logger: loggerFrom(from),
+    from,
     to,
     seed: SEED,
     rampTripMa: { A: 23.1 },
-    tests: testsAt(startMs),
+    tests: testsAt(from),
     truth: { rcd: 'A', kind: 'bakery', causes: ['load:defrost'], answers: ['load:defrost'] },
   })
 }
@@ -85,6 +89,7 @@ const PEOPLE: People = {
 function loggerFrom(startMs: number): Logger {
   return {
     intervalMs: 1_000,
+    intervalOf: { B: 10_000 },
     resolutionMa: 0.01,
     accuracy: { percent: 2, digits: 5 },
     fullScaleMa: 300,
@@ -106,7 +111,6 @@ function bakehouse(): CircuitPlan[] {
     profile: BAKING,
     minutes,
     spread,
-    weekend: 0.8,
   })
   const single = { isolation: 'single-pole' as const, neutralShare: 0.1, device: 'B16' }
   return [

@@ -123,6 +123,8 @@ export interface People {
 /** A clamp with a memory, and what else is recorded. */
 export interface Logger {
   readonly intervalMs: number
+  /** Another interval on some devices, by reference. */
+  readonly intervalOf?: Readonly<Record<string, number>>
   readonly resolutionMa: number
   readonly accuracy: { readonly percent: number; readonly digits: number }
   readonly fullScaleMa: number
@@ -131,7 +133,7 @@ export interface Logger {
   /** What its clock shows less the true time: at the start, and gained a day. */
   readonly clockMs: number
   readonly clockMsPerDay: number
-  /** How often states of loads are written, ms. */
+  /** How often states of loads and the load current are written, ms. */
   readonly statesMs: number
   /** Whether a state is also written as it changes. */
   readonly statesOnChange: boolean

@@ -84,8 +84,8 @@ export function recorderOf(
         const read = gain * magnitude(moment) + random.normal(0, noise)
         const clipped = Math.min(logger.fullScaleMa, Math.max(0, read))
         leakage.push(stamp, Math.round(clipped * places) / places)
-        if (channels.loadCurrent !== null) amps.push(stamp, Math.round(moment.amps * 100) / 100)
       }
+      if (beats && channels.loadCurrent !== null) amps.push(stamp, Math.round(moment.amps * 100) / 100)
       if (beats || changes) {
         for (let k = 0; k < states.length; k++) {
           const on = moment.on[k]!

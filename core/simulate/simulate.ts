@@ -36,7 +36,6 @@ export function simulate(plan: Plan): Simulated {
   const { installation, logger, from, to, seed } = plan
   const clock = localClock(installation.timeZone)
   const weather = weatherOf(plan)
-  const stepMs = plan.stepMs ?? Math.min(10_000, Math.max(1_000, logger?.intervalMs ?? 10_000))
   const sharedSurges = surgeTimes(installation.sharedSurgesPerWeek, from, to, seed, 'shared')
   const series = new Map<string, Series>()
   const trips: Trip[] = []
@@ -50,7 +49,9 @@ export function simulate(plan: Plan): Simulated {
         circuit.loads.map((load) => (load.listed && load.monitored ? stateChannel(load.ref) : null)),
       ),
     }
-    const recorder = logger && recorderOf(logger, channels, from, rcd.flickerMa, seed)
+    const intervalMs = logger?.intervalOf?.[rcd.ref] ?? logger?.intervalMs ?? 10_000
+    const stepMs = plan.stepMs ?? Math.min(10_000, Math.max(1_000, intervalMs))
+    const recorder = logger && recorderOf({ ...logger, intervalMs }, channels, from, rcd.flickerMa, seed)
     const setting = { from, to, clock, latitude: installation.latitude, longitude: installation.longitude }
     const site = { installation, weather, setting, seed, stepMs, keeper, sharedSurges }
     const happened = runDevice(rcd, site, (moment) => {
