@@ -1,11 +1,10 @@
-import type { SiteTest } from '../contract/records.ts'
 import { localClock } from '../timeline/local-clock.ts'
+import { bakeryTests, bakeryWeather } from './bakery-records.ts'
 import type { CircuitPlan, Installation, LoadPlan, Logger, People } from './installation.ts'
 import { simulate } from './simulate.ts'
 import type { Simulated } from './simulated.ts'
 
-const MINUTE = 60_000
-const HOUR = 60 * MINUTE
+const HOUR = 3_600_000
 const DAY = 24 * HOUR
 
 /** The seed of the recorded week; every number of it follows. */
@@ -36,7 +35,7 @@ export function bakeryWeek(startMs: number): Simulated {
     timeZone: TIME_ZONE,
     latitude: 47.3,
     longitude: 13.4,
-    weather: twoWetDays(from),
+    weather: bakeryWeather(from),
     sharedSurgesPerWeek: 0,
     rcds: [
       {
@@ -71,7 +70,7 @@ export function bakeryWeek(startMs: number): Simulated {
     to,
     seed: SEED,
     rampTripMa: { A: 23.1 },
-    tests: testsAt(from),
+    tests: bakeryTests(from),
     truth: { rcd: 'A', kind: 'bakery', causes: ['load:defrost'], answers: ['load:defrost'] },
   })
 }
@@ -273,61 +272,5 @@ function shop(): CircuitPlan[] {
       damp: { mA: 34, lagHours: 2, decayHours: 6, soakMm: 5 },
       loads: [],
     },
-  ]
-}
-
-/** A week of its season, hour by hour, with rain on the second and the sixth day. */
-function twoWetDays(startMs: number): Installation['weather'] {
-  const from = startMs - 24 * HOUR
-  const hours = 9 * 24
-  const rain = new Float64Array(hours)
-  const showers: readonly (readonly [number, readonly number[]])[] = [
-    [24 + 24 + 13, [0.4, 1.8, 2.6, 0.9, 0, 0.3]],
-    [24 + 5 * 24 + 5, [0.2, 0.7, 1.1, 2.2, 3.1, 1.4, 0.6, 0.2]],
-  ]
-  for (const [first, depths] of showers) for (const [k, mm] of depths.entries()) rain[first + k] = mm
-  const wave = (h: number): number => Math.cos((2 * Math.PI * ((h % 24) - 15)) / 24)
-  const temperature = Float64Array.from(rain, (mm, h) => {
-    const celsius = 12 + 5 * wave(h) * (mm > 0 ? 0.4 : 1) + 1.5 * Math.sin(h / 31)
-    return Math.round(celsius * 10) / 10
-  })
-  const humidity = Float64Array.from(rain, (mm, h) => Math.round(Math.min(98, 71 - 14 * wave(h) + (mm > 0 ? 18 : 0))))
-  return { from, rain, temperature, humidity }
-}
-
-function testsAt(startMs: number): SiteTest[] {
-  const at = startMs - 10 * HOUR
-  const insulation = (
-    of: string,
-    megohms: number,
-    more: Partial<SiteTest & { kind: 'insulation' }> = {},
-  ): SiteTest => ({
-    kind: 'insulation',
-    of,
-    between: 'live-earth',
-    testVolts: 500,
-    megohms,
-    atLeast: false,
-    loadsConnected: false,
-    surgePartsConnected: false,
-    at,
-    ...more,
-  })
-  return [
-    { kind: 'ramp', rcd: 'A', tripMa: 23.1, at },
-    { kind: 'ramp', rcd: 'B', tripMa: 24.6, at: at + 4 * MINUTE },
-    {
-      kind: 'clamp',
-      rcd: 'A',
-      ma: 13.6,
-      off: [],
-      at: at + 10 * MINUTE,
-      note: 'Everything on, freezer between defrosts',
-    },
-    { kind: 'clamp', rcd: 'A', ma: 10.8, off: ['circuit:4'], at: at + 13 * MINUTE },
-    { kind: 'clamp', rcd: 'A', ma: 9.8, off: ['circuit:1'], at: at + 15 * MINUTE },
-    insulation('circuit:3', 4.6, { note: 'Dry: tested between defrosts' }),
-    insulation('circuit:7', 999, { atLeast: true, loadsConnected: true }),
-    insulation('circuit:13', 2.2),
   ]
 }

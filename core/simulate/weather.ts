@@ -2,7 +2,7 @@ import type { Draws } from './draws.ts'
 
 const HOUR = 3_600_000
 
-/** Hourly weather; hour i covers [from + i h, from + (i + 1) h). */
+/** Hourly weather; hour i covers [from + i h, from + (i + 1) h). NaN where nothing is known; harm comes of known rain only. */
 export interface Weather {
   readonly from: number
   /** mm in the hour. */
@@ -76,7 +76,8 @@ export function wetness(weather: Weather, damping: Damping, from: number, to: nu
   const lead = Math.ceil((damping.lagHours + 4 * damping.decayHours) * 60)
   for (let m = -lead; m < minutes; m++) {
     const hour = Math.floor((from + m * 60_000 - damping.lagHours * HOUR - weather.from) / HOUR)
-    const arriving = hour >= 0 && hour < weather.rain.length ? weather.rain[hour]! / 60 : 0
+    const fallen = weather.rain[hour]
+    const arriving = fallen !== undefined && Number.isFinite(fallen) ? fallen / 60 : 0
     water = water * keep + arriving
     if (m >= 0) out[m] = 1 - Math.exp(-water / damping.soakMm)
   }

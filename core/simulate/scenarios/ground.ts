@@ -144,7 +144,7 @@ function rampTest(tripMa: number, from: number, random: Draws): Pick<Plan, 'test
 }
 
 /** The installation with as much more capacitive standing leakage as lifts its greatest sound level to `mA`, or all leakage less. */
-function raisedTo(installation: Installation, mA: number, from: number, to: number, seed: number): Installation {
+export function raisedTo(installation: Installation, mA: number, from: number, to: number, seed: number): Installation {
   const { greatest } = soundLevels({ installation, from, to, seed })
   const less = Math.min(1, mA / magnitude(greatest))
   const extra = Math.sqrt(Math.max(0, mA * mA - (less * greatest.g) ** 2)) - less * greatest.b
