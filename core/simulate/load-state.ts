@@ -1,5 +1,5 @@
 import type { Draws } from './draws.ts'
-import type { LoadPlan } from './installation.ts'
+import type { LoadFault, LoadPlan } from './installation.ts'
 
 const HOUR = 3_600_000
 
@@ -19,7 +19,7 @@ export interface LoadState {
 /** The state of a load, at rest and damp. Draws only from `random`. */
 export function loadState(plan: LoadPlan, random: Draws): LoadState {
   const settle = plan.settleSeconds ?? 0
-  const extra = faultOf(plan, random)
+  const extra = plan.fault === undefined ? null : faultOf(plan.fault, random)
   let warm = 0
   const state = {
     g: 0,
@@ -29,87 +29,113 @@ export function loadState(plan: LoadPlan, random: Draws): LoadState {
     step(t: number, dt: number, plugged: boolean, running: boolean): void {
       const goal = running ? 1 : 0
       warm = settle === 0 ? goal : goal + (warm - goal) * Math.exp(-dt / (1_000 * settle))
-      const fault = extra.step(t, dt, running)
-      state.fault = fault.held
-      state.pulse = fault.brief
+      if (extra !== null) {
+        extra.step(t, dt, running)
+        state.fault = extra.held
+        state.pulse = extra.brief
+      }
       // A warm part leaks only with supply on it; `warm` itself outlasts the switch.
       const live = running ? warm : 0
-      state.g = (plugged ? plan.idle.g : 0) + live * plan.on.g + fault.held
+      state.g = (plugged ? plan.idle.g : 0) + live * plan.on.g + state.fault
       state.b = (plugged ? plan.idle.b : 0) + live * plan.on.b
     },
   }
   return state
 }
 
+/** A fault as time goes on: `held` is what it adds at the end of a step, `brief` what it added for less than the step. */
 interface Fault {
-  step(t: number, dt: number, running: boolean): { readonly held: number; readonly brief: number }
+  held: number
+  brief: number
+  step(t: number, dt: number, running: boolean): void
 }
 
-function faultOf(plan: LoadPlan, random: Draws): Fault {
-  const fault = plan.fault
-  if (fault === undefined) return { step: () => ({ held: 0, brief: 0 }) }
+function faultOf(fault: LoadFault, random: Draws): Fault {
   switch (fault.kind) {
-    case 'when-on': {
-      let strength = 0
-      let ran = false
-      return {
-        step(_t, _dt, running) {
-          if (running && !ran) strength = random.logNormal(fault.mA, fault.spread)
-          ran = running
-          return { held: running ? strength : 0, brief: 0 }
-        },
-      }
-    }
-    case 'in-run': {
-      const none = Number.POSITIVE_INFINITY
-      let next = none
-      let end = none
-      let strength = 0
-      return {
-        step(t, dt, running) {
-          if (!running) {
-            next = none
-            end = none
-            return { held: 0, brief: 0 }
-          }
-          if (next === none) next = t - dt + random.exponential(HOUR / fault.perHour)
-          let brief = 0
-          while (next <= t) {
-            if (end === none) {
-              strength = random.logNormal(fault.mA, fault.spread)
-              end = next + random.exponential(1_000 * fault.seconds)
-            }
-            if (end > t) return { held: strength, brief: 0 }
-            brief = Math.max(brief, strength)
-            next = end + random.exponential(HOUR / fault.perHour)
-            end = none
-          }
-          return { held: 0, brief }
-        },
-      }
-    }
-    case 'warming': {
-      let damp = 1
-      let heat = 0
-      let strength = 0
-      let ran = false
-      return {
-        step(_t, dt, running) {
-          const minutes = dt / 60_000
-          if (running && !ran) strength = random.logNormal(fault.mA, fault.spread)
-          ran = running
-          if (running) {
-            heat = 1 - (1 - heat) * Math.exp(-minutes / fault.riseMinutes)
-            damp *= Math.exp((-heat * minutes) / fault.dryMinutes)
-            return { held: strength * heat * damp, brief: 0 }
-          }
-          heat *= Math.exp(-minutes / (2 * fault.riseMinutes))
-          damp = 1 - (1 - damp) * Math.exp(-dt / (HOUR * fault.dampHours))
-          return { held: 0, brief: 0 }
-        },
-      }
-    }
+    case 'when-on':
+      return leaksWhenOn(fault, random)
+    case 'in-run':
+      return leaksAtRandom(fault, random)
+    case 'warming':
+      return leaksWhileWarming(fault, random)
     default:
       return fault satisfies never
   }
+}
+
+function leaksWhenOn({ mA, spread }: LoadFault & { kind: 'when-on' }, random: Draws): Fault {
+  let strength = 0
+  let ran = false
+  const state: Fault = {
+    held: 0,
+    brief: 0,
+    step(_t, _dt, running) {
+      if (running && !ran) strength = random.logNormal(mA, spread)
+      ran = running
+      state.held = running ? strength : 0
+    },
+  }
+  return state
+}
+
+function leaksAtRandom(fault: LoadFault & { kind: 'in-run' }, random: Draws): Fault {
+  const none = Number.POSITIVE_INFINITY
+  const pause = (): number => random.exponential(HOUR / fault.perHour)
+  let next = none
+  let end = none
+  let strength = 0
+  const state: Fault = {
+    held: 0,
+    brief: 0,
+    step(t, dt, running) {
+      state.held = 0
+      state.brief = 0
+      if (!running) {
+        next = none
+        end = none
+        return
+      }
+      if (next === none) next = t - dt + pause()
+      while (next <= t) {
+        if (end === none) {
+          strength = random.logNormal(fault.mA, fault.spread)
+          end = next + random.exponential(1_000 * fault.seconds)
+        }
+        if (end > t) {
+          state.held = strength
+          return
+        }
+        state.brief = Math.max(state.brief, strength)
+        next = end + pause()
+        end = none
+      }
+    },
+  }
+  return state
+}
+
+function leaksWhileWarming(fault: LoadFault & { kind: 'warming' }, random: Draws): Fault {
+  let damp = 1
+  let heat = 0
+  let strength = 0
+  let ran = false
+  const state: Fault = {
+    held: 0,
+    brief: 0,
+    step(_t, dt, running) {
+      const minutes = dt / 60_000
+      if (running && !ran) strength = random.logNormal(fault.mA, fault.spread)
+      ran = running
+      if (running) {
+        heat = 1 - (1 - heat) * Math.exp(-minutes / fault.riseMinutes)
+        damp *= Math.exp((-heat * minutes) / fault.dryMinutes)
+        state.held = strength * heat * damp
+      } else {
+        heat *= Math.exp(-minutes / (2 * fault.riseMinutes))
+        damp = 1 - (1 - damp) * Math.exp(-dt / (HOUR * fault.dampHours))
+        state.held = 0
+      }
+    },
+  }
+  return state
 }

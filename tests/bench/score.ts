@@ -11,21 +11,27 @@ export interface Score {
   readonly toTruth: number
   /** Suspects graded strong that are no cause. */
   readonly falseStrong: readonly string[]
-  /** Every suspect's probability beside whether it is a cause. */
+  /**
+   * Every suspect's probability beside whether it is a cause. Where several answers say the same thing (a time switch on no sheet: the
+   * clock, or an unlisted load), only the likeliest of them counts.
+   */
   readonly told: readonly (readonly [probability: number, cause: boolean])[]
 }
 
-/** Scores a line-up. Suspects that the data cannot tell apart stand for each other; a load stands for the circuit it is alone on. */
+/** Scores a line-up, sorted by probability as it comes. */
 export function scoreOf(suspects: readonly Suspect[], truth: Truth): Score {
   const right = new Set([...truth.answers, ...truth.causes])
   const first = suspects[0]
+  const same = !truth.answers.every((of) => truth.causes.includes(of))
+  const likeliest = suspects.find(({ of }) => right.has(of))?.of
+  const counted = suspects.filter(({ of }) => !same || !right.has(of) || of === likeliest)
   return {
     right: first !== undefined && right.has(first.of),
     first: first?.of ?? '(nobody)',
     firstProbability: first?.probability ?? 0,
     toTruth: Math.max(0, ...suspects.filter(({ of }) => right.has(of)).map(({ probability }) => probability)),
     falseStrong: suspects.filter(({ of, grade }) => grade === 'strong' && !right.has(of)).map(({ of }) => of),
-    told: suspects.map(({ of, probability }) => [probability, right.has(of)] as const),
+    told: counted.map(({ of, probability }) => [probability, right.has(of)] as const),
   }
 }
 

@@ -132,7 +132,7 @@ function circuitScenario(seed: number, kind: string, logger: (ground: Ground) =>
   const needed = neededMa(ground)
   // A load that is alone on its circuit is the same suspect.
   const answers = place.loads.length === 1 ? [cause, `load:${load.ref}`] : [cause]
-  const isolating = inTurn(ground, random.between(1.5, 3))
+  const isolating = inTurn(ground)
   const planAt = (strength: number): Plan => ({
     ...ground,
     installation: {
@@ -146,7 +146,7 @@ function circuitScenario(seed: number, kind: string, logger: (ground: Ground) =>
     people: { ...ground.people, suspects: [] },
     truth: { rcd: 'A', kind, causes: [cause], answers },
   })
-  return tuned(planAt, 14, 30)
+  return tuned(planAt, 20, 40)
 }
 
 function unwatched(installation: Installation): Installation {
@@ -159,12 +159,14 @@ function unwatched(installation: Installation): Installation {
   }))
 }
 
-/** Each circuit off once, one after the other, `days` each, with half a day between. */
-function inTurn(ground: Ground, days: number): Installation['isolating'] {
+/** Each circuit off once, one after the other, as long as the span allows, with half a day between. */
+function inTurn(ground: Ground): Installation['isolating'] {
   const { circuits } = ground.installation.rcds[0]!
+  const first = ground.from + 2 * DAY
+  const each = (ground.to - first) / circuits.length
   return circuits.map((circuit, i) => {
-    const from = ground.from + 2 * DAY + i * (days * DAY + 12 * HOUR)
-    return { of: `circuit:${circuit.ref}`, from, to: Math.min(ground.to, from + days * DAY), told: true }
+    const from = first + i * each
+    return { of: `circuit:${circuit.ref}`, from, to: from + each - 12 * HOUR, told: true }
   })
 }
 
