@@ -59,7 +59,10 @@ function rainPlans(ground: Ground, seed: number, kind: string): (strength: numbe
 /** Neutral touches earth: the residual follows the load current of the whole group. */
 export function neutralEarth(seed: number): Simulated {
   const drawn = drawGround(seed, { days: 14, loads: [8, 12] })
-  const ground = drawn.logger ? { ...drawn, logger: { ...drawn.logger, loadCurrent: true } } : drawn
+  const ground = alikeInCurrent(
+    drawn.logger ? { ...drawn, logger: { ...drawn.logger, loadCurrent: true } } : drawn,
+    seed,
+  )
   const needed = neededMa(ground)
   return tuned(
     (strength) => ({
@@ -70,6 +73,21 @@ export function neutralEarth(seed: number): Simulated {
     5,
     14,
   )
+}
+
+/** The ground with loads of 3 to 8 A: heavy load of the group is several of them, not one. */
+function alikeInCurrent(ground: Ground, seed: number): Ground {
+  const random = draws(seed, 'alike')
+  return {
+    ...ground,
+    installation: withRcd(ground.installation, (rcd) => ({
+      ...rcd,
+      circuits: rcd.circuits.map((circuit) => ({
+        ...circuit,
+        loads: circuit.loads.map((load) => ({ ...load, amps: random.between(3, 8) })),
+      })),
+    })),
+  }
 }
 
 /** Nothing is broken: many small leakages together now and then reach the trip current. */
