@@ -1,3 +1,4 @@
+import { laggedCorrelation } from '../../statistics/correlation.ts'
 import { quantile } from '../../statistics/quantile.ts'
 import { lowerBound, type Series } from '../../timeline/series.ts'
 import type { ExposureWindow } from '../line-up.ts'
@@ -84,19 +85,7 @@ function correlationAt(wetness: Series, level: Series, lag: number): number {
     xs.push(wetness.v[i]!)
     ys.push(quantile(thinned(level.v.subarray(a, b), 61), 0.5))
   }
-  return xs.length < 12 ? 0 : pearson(xs, ys)
-}
-
-function pearson(xs: readonly number[], ys: readonly number[]): number {
-  const mean = (v: readonly number[]): number => v.reduce((a, b) => a + b, 0) / v.length
-  const [mx, my] = [mean(xs), mean(ys)]
-  let [xy, xx, yy] = [0, 0, 0]
-  for (let i = 0; i < xs.length; i++) {
-    xy += (xs[i]! - mx) * (ys[i]! - my)
-    xx += (xs[i]! - mx) ** 2
-    yy += (ys[i]! - my) ** 2
-  }
-  return xx > 0 && yy > 0 ? xy / Math.sqrt(xx * yy) : 0
+  return xs.length < 12 ? 0 : (laggedCorrelation(xs, ys, 0) ?? 0)
 }
 
 /** Cold and warm hours, by quantiles of the span's own temperatures. */
@@ -115,6 +104,8 @@ export function loadCurrentWindows(frame: Frame): ExposureWindow[] {
     [0.7, true],
     [0.85, true],
     [0.95, true],
+    [0.98, true],
+    [0.995, true],
   ])
 }
 
@@ -125,7 +116,7 @@ function quantileWindows(
   cuts: readonly (readonly [number, boolean])[],
 ): ExposureWindow[] {
   if (series === null || series.t.length < 20) return []
-  const sample = thinned(series.v, 5_000)
+  const sample = thinned(series.v, 20_000)
   const windows = cuts.map(([q, above]) => {
     const cut = quantile(sample, q)
     const held = heldAbove(series, cut, above, 0)
