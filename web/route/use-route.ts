@@ -17,6 +17,8 @@ export function useRoute(): Route {
     const follow = (): void => setRoute(readRoute(location.pathname, location.search))
     addEventListener('popstate', follow)
     addEventListener(MOVED, follow)
+    // a page below may have moved on before this one listened: effects run from the inside out
+    follow()
     return () => {
       removeEventListener('popstate', follow)
       removeEventListener(MOVED, follow)
