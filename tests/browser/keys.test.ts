@@ -45,6 +45,7 @@ describe.runIf(HAS_BROWSER)('signing in', () => {
 
   it('lists the sites when there are several, and finds one by name', async () => {
     await server.call('POST', '/sites', { name: 'Water mill', timeZone: 'Europe/Vienna' })
+    await open.page.goto(server.url)
     await open.page.getByLabel('Key').fill(server.ownerKey)
     await open.page.getByRole('button', { name: 'Sign in' }).click()
     await open.page.getByRole('link', { name: 'Water mill' }).waitFor()
