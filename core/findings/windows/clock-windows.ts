@@ -67,8 +67,7 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
     for (let s = 0; s <= steps; s++) {
       const frequency = 1 / longest + s * step
       const hours = 1 / frequency
-      // whole multiples of a day by the clock on the wall belong to the clock
-      if (c === 0 && isDaily(hours, spanHours)) continue
+      if (isDaily(hours, spanHours)) continue
       for (const width of PHASE_WIDTHS) {
         const phases = Math.round(2 / width)
         for (let k = 0; k < phases; k++) {
@@ -93,10 +92,17 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
   return windows
 }
 
-function isDaily(hours: number, spanHours: number): boolean {
-  const days = hours / 24
-  const slack = Math.max(0.02, hours / spanHours / 4)
-  return Math.abs(days - Math.round(days)) < slack * Math.max(1, days) && Math.round(days) >= 1
+/** Whole multiples of a day, and a day in up to so many equal parts, belong to the clock on the wall. */
+const PARTS_OF_A_DAY = 6
+
+/** Whether a period cannot be told from a clock time (or a few of them) over a span. */
+export function isDaily(hours: number, spanHours: number): boolean {
+  const ratio = hours >= 24 ? hours / 24 : 24 / hours
+  const whole = Math.round(ratio)
+  if (hours < 24 && whole > PARTS_OF_A_DAY) return false
+  // a phase that drifts by less than a quarter over the span looks fixed
+  const slack = Math.max(0.005, hours / spanHours / 4)
+  return Math.abs(ratio - whole) < slack * whole
 }
 
 function dayProfile(frame: Frame): DayProfile {
