@@ -31,6 +31,7 @@ export {
 } from './gamma-poisson.ts'
 export { gammaQuantile } from './gamma-quantile.ts'
 export { type GammaTails, gammaRegularised } from './gamma-regularised.ts'
+export { type GeneralisedPareto, generalisedPareto, paretoQuantile } from './generalised-pareto.ts'
 export { hashText } from './hash-text.ts'
 export { hodgesLehmann, hodgesLehmannShift } from './hodges-lehmann.ts'
 export { holm } from './holm.ts'

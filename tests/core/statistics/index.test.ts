@@ -7,13 +7,12 @@ it('exports exactly these names', () => {
     `JEFFREYS MAD_TO_SIGMA benjaminiHochberg binomialCdf binomialPmf binomialTest binomialUpperTail breakpoints
     breslowDay changepointBiweight changepointL2 changepointPoisson chiSquaredCdf chiSquaredUpperTail
     circularShiftTest clopperPearson eventCoincidence fisherExact gammaPoisson gammaQuantile gammaRegularised
-    hashText hodgesLehmann hodgesLehmannShift holm huberRegression kuiper laggedCorrelation leastSquares logChoose
-    logEvidence logGamma logPoissonPmf lombScargle lombScargleFalseAlarm mad mannKendall mantelHaenszel
-    mantelHaenszelExact mantelHaenszelRates meanDirection meanRanks medcouple median medianSorted nnls
-    noEventProbability poissonCdf poissonPmf poissonRate poissonRateRatio poissonRateTest poissonUpperTail
-    predictiveCdf predictivePmf qr quantile quantileSorted quietExposure raoSpacing rateQuantile rayleigh
-    rayleighDirected ruleOfThree seededRandom theilSen vonMises vonMisesKappa weightedQuantile weightedQuantiles`.split(
-      /\s+/,
-    ),
+    generalisedPareto hashText hodgesLehmann hodgesLehmannShift holm huberRegression kuiper laggedCorrelation
+    leastSquares logChoose logEvidence logGamma logPoissonPmf lombScargle lombScargleFalseAlarm mad mannKendall
+    mantelHaenszel mantelHaenszelExact mantelHaenszelRates meanDirection meanRanks medcouple median medianSorted
+    nnls noEventProbability paretoQuantile poissonCdf poissonPmf poissonRate poissonRateRatio poissonRateTest
+    poissonUpperTail predictiveCdf predictivePmf qr quantile quantileSorted quietExposure raoSpacing rateQuantile
+    rayleigh rayleighDirected ruleOfThree seededRandom theilSen vonMises vonMisesKappa weightedQuantile
+    weightedQuantiles`.split(/\s+/),
   )
 })
