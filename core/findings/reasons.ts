@@ -1,8 +1,8 @@
 import type { Grade, Reason } from '../contract/findings.ts'
 import { totalMs } from '../timeline/spans.ts'
 import type { Timeline } from '../timeline/timeline.ts'
+import type { Measured } from './candidates.ts'
 import type { Preference } from './preference.ts'
-import type { Measured } from './suspects.ts'
 import { HOUR_MS } from './windows/trip-share.ts'
 import { current, figure, pValue, rounded } from './words.ts'
 
@@ -93,7 +93,7 @@ function triggerReason(of: string, measured: Measured): Reason | null {
 }
 
 /** What people saw running: worth telling, and worth setting against how often it runs anyway. */
-function notedReason(timeline: Timeline, of: string): Reason | null {
+export function notedReason(timeline: Timeline, of: string): Reason | null {
   const noted = timeline.trips.filter((t) => t.running.includes(of)).length
   if (noted === 0) return null
   const asked = timeline.trips.filter((t) => t.running.length > 0).length

@@ -1,0 +1,150 @@
+import type { BudgetLine, Headroom, TripFinding } from '../contract/findings.ts'
+import { usualInterval } from '../timeline/series.ts'
+import { spansOf } from '../timeline/spans.ts'
+import type { Timeline } from '../timeline/timeline.ts'
+import type { Candidate, ExposureWindow } from './line-up.ts'
+import type { LogView } from './log-view.ts'
+import { type CauseKind, courseRatio, type Pace } from './marks.ts'
+import {
+  ABNORMAL,
+  innocence,
+  isAbnormal,
+  loadCurrentOdds,
+  ODDS,
+  rainOdds,
+  standingOdds,
+  thingOdds,
+  wetTime,
+} from './prior-odds.ts'
+import type { RunProfile } from './run-profiles.ts'
+import { clockWindows, periodWindows } from './windows/clock-windows.ts'
+import { heldToTrips } from './windows/held-to-trips.ts'
+import { levelWindows } from './windows/level-windows.ts'
+import { sunWindows } from './windows/sun-windows.ts'
+import { thingWindows } from './windows/thing-windows.ts'
+import { type Frame, marked, windowOf } from './windows/trip-share.ts'
+import { dryings, loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
+
+/** A device that opens too soon is fired by any sound load: how far the odds of all else fall then. */
+const UNDER_A_BAD_DEVICE = 0.001
+/** Odds of a device that a test, or its own trips, showed to open too soon: measured, not guessed. */
+const BAD_DEVICE = 600
+
+/** Times of people and loggers differ by this much. */
+const TOGETHER_MS = 60_000
+
+/** What the other findings say that the line-up uses. */
+export interface Measured {
+  readonly trips: readonly TripFinding[]
+  readonly profiles: ReadonlyMap<string, RunProfile>
+  readonly budget: readonly BudgetLine[]
+  readonly headroom: Headroom
+}
+
+/**
+ * Every suspect that this site can have, with its prior odds and the windows in which it may act: circuits and loads,
+ * rain, temperature, clock, period, sun, load current, standing leakage or the device itself, supply, and a load that
+ * nobody listed. `courses` are those of the frame's trips. A suspect without a window is left out: nothing can be said.
+ */
+export function candidatesOf(
+  frame: Frame,
+  courses: readonly TripFinding['course'][],
+  measured: Measured,
+  log: LogView,
+): Candidate[] {
+  const { timeline } = frame
+  const interval = timeline.leakage === null ? 1 : usualInterval(timeline.leakage)
+  const marks = (kind: CauseKind, pace: Pace): Float64Array =>
+    Float64Array.from(courses, (course) => courseRatio(kind, pace, course, Number.isNaN(interval) ? 1 : interval))
+  const list: Candidate[] = []
+  const tooSensitive = isTooSensitive(timeline, measured)
+  const add = (of: string, given: number, kind: CauseKind, windows: readonly ExposureWindow[]): void => {
+    const odds = tooSensitive && of !== 'device' && of !== 'supply' ? given * UNDER_A_BAD_DEVICE : given
+    if (windows.length === 0 || odds <= 0) return
+    // supply has one pace; every other cause is tried at both
+    const paced =
+      kind === 'supply'
+        ? marked(windows, marks(kind, 'at-once'), 1)
+        : [...marked(windows, marks(kind, 'at-once'), 0.5), ...marked(windows, marks(kind, 'visibly'), 0.5)]
+    list.push({ of, odds, windows: paced })
+  }
+  const byThing = new Map(
+    timeline.things.map((thing) => [thing.of, thingWindows(frame, heldToTrips(thing, frame.trips))]),
+  )
+  const isJudged = (of: string): boolean => (byThing.get(of)?.length ?? 0) > 0
+  const laws = dryings(frame, log.unexplained?.remainder ?? null)
+  const rain = rainOdds(timeline, log, laws)
+  const wet = wetTime(rain, laws)
+  const level = levelWindows(frame, log, wet)
+  const unlisted = unlistedWindows(frame, log, wet !== null)
+  for (const thing of timeline.things) {
+    const odds = thingOdds(timeline, thing, log, isJudged) * (unlisted.length > 0 ? innocence(log, thing.of) : 1)
+    add(thing.of, odds, 'local', byThing.get(thing.of) ?? [])
+  }
+  add('rain', rain, 'weather', rainWindows(frame, laws))
+  add('temperature', ODDS.temperature, 'weather', temperatureWindows(frame))
+  // what comes by a schedule is named by it: the excursions' window goes to the clock or the period
+  const schedule = unlisted.length === 0 ? 'none' : log.schedule.kind
+  const weight = unlisted.length === 0 ? 1 : isAbnormal(log) ? ABNORMAL : 4
+  const clocked = schedule === 'clock' ? weight : 1
+  const periodic = schedule === 'period' ? weight : 1
+  const share = (windows: readonly ExposureWindow[], by: number): ExposureWindow[] =>
+    by > 1 ? [...unlisted, ...scaled(windows, 0.5)] : [...windows]
+  add('clock', ODDS.clock * clocked, 'local', share(clockWindows(frame), clocked))
+  add('period', ODDS.period * periodic, 'local', share(periodWindows(frame), periodic))
+  add('sun', ODDS.sun, 'local', sunWindows(frame))
+  add('load-current', loadCurrentOdds(log), 'local', loadCurrentWindows(frame))
+  if (tooSensitive) add('device', BAD_DEVICE, 'local', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
+  else add('standing', standingOdds(log, measured.headroom), 'local', level)
+  add('supply', ODDS.supply, 'supply', supplyWindows(frame))
+  add('unlisted', ODDS.unlisted * (schedule === 'none' ? weight : 1), 'local', [
+    ...unlisted,
+    ...always(frame, 'at any time', unlisted.length > 0 ? 0.5 : 1),
+  ])
+  return list
+}
+
+function always(frame: Frame, words: string, prior: number): ExposureWindow[] {
+  const inside = new Float64Array(frame.trips.length).fill(1)
+  return [{ key: 'any', words, prior, hours: frame.hours, inside, weights: inside }]
+}
+
+/**
+ * When other devices opened: as exactly as their trips are known, so that an interval of hours that holds a trip of
+ * this one says little and an instant much.
+ */
+function supplyWindows(frame: Frame): ExposureWindow[] {
+  const { from, to, otherTrips } = frame.timeline
+  const spans = spansOf(otherTrips.map((t) => [t.from - TOGETHER_MS, t.to + TOGETHER_MS] as const))
+  const words = 'when another device opened too, as far as its trips are known'
+  const together = windowOf(frame, 'together', words, 0.5, spans, spansOf([[from, to]]))
+  return together === null
+    ? always(frame, 'together with others', 1)
+    : [together, ...always(frame, 'together with others', 0.5)]
+}
+
+function scaled(windows: readonly ExposureWindow[], by: number): ExposureWindow[] {
+  return windows.map((w) => ({ ...w, prior: w.prior * by }))
+}
+
+/** Excursions that no named load accounts for or starts, seen apart from trips, and not the rain's. */
+function unlistedWindows(frame: Frame, log: LogView, rainLifts: boolean): ExposureWindow[] {
+  const { unexplained } = log
+  if (unexplained === null || unexplained.apart < 3 || unexplained.follows !== null || rainLifts) return []
+  const all = spansOf([[frame.timeline.from, frame.timeline.to]])
+  const words = 'while the leakage stood far above what the listed loads explain'
+  const window = windowOf(frame, 'unexplained', words, 0.5, unexplained.excursions, all)
+  return window === null ? [] : [window]
+}
+
+/**
+ * A device that opens below 0.5 IΔn, the current at which the standards forbid a trip (IEC 61008-1, IEC 61009-1, from
+ * memory): by a ramp test, or because it opened at least three times after a visible rise, and the leakage never came
+ * near that current.
+ */
+function isTooSensitive(timeline: Timeline, { headroom, trips }: Measured): boolean {
+  const half = 0.5 * timeline.rcd.ratedMa
+  if (headroom.tripMa.basis === 'ramp-tests') return headroom.tripMa.high < half
+  const risen = trips.filter((t) => t.levelMa !== null && (t.course === 'step' || t.course === 'creep'))
+  return risen.length >= 3 && (headroom.standingMa?.max ?? half) < 0.9 * half
+}
