@@ -6,6 +6,7 @@ export { changepointL2 } from './changepoint-l2.ts'
 export { changepointPoisson } from './changepoint-poisson.ts'
 export { chiSquaredCdf, chiSquaredUpperTail } from './chi-squared.ts'
 export { binomialTest, clopperPearson, type Proportion } from './clopper-pearson.ts'
+export { type ConditionalLogit, conditionalLogit } from './conditional-logit.ts'
 export type { ConditionalOdds } from './conditional-odds.ts'
 export {
   type CircularShiftTest,
@@ -17,6 +18,7 @@ export {
 export type { Design } from './design.ts'
 export { type EventCoincidence, eventCoincidence } from './event-coincidence.ts'
 export type { ExactPValues } from './exact-test.ts'
+export { type FirthFit, firthLogistic } from './firth-logistic.ts'
 export { fisherExact, type Table } from './fisher-exact.ts'
 export {
   type GammaBelief,
@@ -40,6 +42,7 @@ export { type Kuiper, kuiper } from './kuiper.ts'
 export { type LeastSquares, leastSquares } from './least-squares.ts'
 export { logChoose } from './log-choose.ts'
 export { logGamma } from './log-gamma.ts'
+export { type LogisticFit, logisticRegression } from './logistic-regression.ts'
 export { type LombScargle, lombScargle, lombScargleFalseAlarm } from './lomb-scargle.ts'
 export { MAD_TO_SIGMA, mad } from './mad.ts'
 export { type MannKendall, mannKendall } from './mann-kendall.ts'
@@ -53,6 +56,7 @@ export {
   mantelHaenszelRates,
   type RateStratum,
 } from './mantel-haenszel.ts'
+export type { Fit } from './maximise.ts'
 export { type MeanDirection, meanDirection } from './mean-direction.ts'
 export { medcouple } from './medcouple.ts'
 export { median, medianSorted } from './median.ts'
@@ -62,6 +66,7 @@ export { poissonCdf, poissonUpperTail } from './poisson-cdf.ts'
 export { logPoissonPmf, poissonPmf } from './poisson-pmf.ts'
 export { type PoissonRate, poissonRate, poissonRateTest } from './poisson-rate.ts'
 export { type PoissonRateRatio, poissonRateRatio } from './poisson-rate-ratio.ts'
+export { type PoissonFit, poissonRegression } from './poisson-regression.ts'
 export { type Qr, qr } from './qr.ts'
 export { type QuantileType, quantile, quantileSorted } from './quantile.ts'
 export { type Random, seededRandom } from './random.ts'

@@ -6,11 +6,11 @@ it('exports exactly these names', () => {
   expect(Object.keys(statistics).sort()).toEqual(
     `JEFFREYS MAD_TO_SIGMA benjaminiHochberg binomialCdf binomialPmf binomialTest binomialUpperTail breakpoints
     breslowDay changepointBiweight changepointL2 changepointPoisson chiSquaredCdf chiSquaredUpperTail
-    circularShiftTest clopperPearson eventCoincidence fisherExact gammaPoisson gammaQuantile gammaRegularised
+    circularShiftTest clopperPearson conditionalLogit eventCoincidence firthLogistic fisherExact gammaPoisson gammaQuantile gammaRegularised
     generalisedPareto hashText hodgesLehmann hodgesLehmannShift holm huberRegression kuiper laggedCorrelation
-    leastSquares logChoose logEvidence logGamma logPoissonPmf lombScargle lombScargleFalseAlarm mad mannKendall
+    leastSquares logChoose logEvidence logGamma logPoissonPmf logisticRegression lombScargle lombScargleFalseAlarm mad mannKendall
     mantelHaenszel mantelHaenszelExact mantelHaenszelRates meanDirection meanRanks medcouple median medianSorted
-    nnls noEventProbability paretoQuantile poissonCdf poissonPmf poissonRate poissonRateRatio poissonRateTest
+    nnls noEventProbability paretoQuantile poissonCdf poissonPmf poissonRate poissonRateRatio poissonRateTest poissonRegression
     poissonUpperTail predictiveCdf predictivePmf qr quantile quantileSorted quietExposure raoSpacing rateQuantile
     rayleigh rayleighDirected ruleOfThree seededRandom theilSen vonMises vonMisesKappa weightedQuantile
     weightedQuantiles`.split(/\s+/),
