@@ -92,7 +92,8 @@ export function candidatesOf(
     by > 1 ? [...unlisted, ...scaled(windows, 0.5)] : [...windows]
   add('clock', ODDS.clock * clocked, 'local', share(clockWindows(frame), clocked))
   add('period', ODDS.period * periodic, 'local', share(periodWindows(frame), periodic))
-  add('sun', ODDS.sun, 'local', sunWindows(frame))
+  // steps of the log that keep to the clock do not follow the sun
+  add('sun', ODDS.sun * (schedule === 'clock' ? 0.1 : 1), 'local', sunWindows(frame))
   add('load-current', loadCurrentOdds(log), 'local', loadCurrentWindows(frame))
   if (tooSensitive) add('device', BAD_DEVICE, 'local', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
   else add('standing', standingOdds(log, measured.headroom), 'local', level)

@@ -30,7 +30,7 @@ const LOADS_ASSUMED = 1
  * stationary appliance of class I (3.5 mA; from memory).
  */
 const ABNORMAL_MA = 5.25
-const ABNORMAL_SHARE = 0.3
+const ABNORMAL_SHARE = 0.2
 /** A lift that can fire trips by itself, as a share of the trip current. */
 const LARGE_LIFT = 0.12
 /** How much likelier a cause a thing is that was seen to leak so much. */
