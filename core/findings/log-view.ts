@@ -65,6 +65,10 @@ export function logView(
   }
   const minutes = energisedMinutes(timeline, timeline.leakage)
   const found = minutes.t.length < 60 ? null : unexplained(timeline, minutes, budget, tripMa)
+  // what comes with one named thing alone is that thing's lift, though the budget's steps do not show it
+  if (found !== null && found.follows !== null && found.apart >= LEAST_RUNS) {
+    liftShare.set(found.follows, Math.max(liftShare.get(found.follows) ?? 0, found.heightMa / tripMa))
+  }
   return {
     minutes,
     tripMa,

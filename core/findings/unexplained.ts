@@ -26,7 +26,7 @@ export interface Unexplained {
   readonly heightMa: number
   /** How many excursions began apart from any trip. */
   readonly apart: number
-  /** The named thing whose starts most excursions follow; null when there is none. */
+  /** The named thing whose starts most excursions follow, or the one circuit that must be on for them; null when there is none. */
   readonly follows: string | null
 }
 
@@ -75,7 +75,14 @@ export function unexplained(
     (at) => !timeline.trips.some((trip) => trip.from >= at && trip.from - at < NEAR_TRIP_MS),
   ).length
   const heightMa = heights.length === 0 ? 0 : quantile(heights, 0.5)
-  return { remainder: { t: minutes.t, v }, cutMa, heightMa, excursions, apart, follows: followed(timeline, starts) }
+  return {
+    remainder: { t: minutes.t, v },
+    cutMa,
+    heightMa,
+    excursions,
+    apart,
+    follows: followed(timeline, starts) ?? onlyUnder(timeline, starts),
+  }
 }
 
 /** The thing within a quarter of an hour of whose starts at least half of the excursions begin, well above chance. */
@@ -96,4 +103,21 @@ function followed(timeline: Timeline, starts: readonly number[]): string | null 
     }
   }
   return best
+}
+
+/** Excursions that should have begun while a circuit was off, were it not for that circuit, before it is named. */
+const LEAST_MISSED = 3
+
+/**
+ * The one circuit without which no excursion ever began, though it was off long enough for several: what leaks hangs on
+ * it. Null when there is none, or more than one.
+ */
+function onlyUnder(timeline: Timeline, starts: readonly number[]): string | null {
+  const all = totalMs(timeline.energised)
+  const found = timeline.things.filter(({ kind, state }) => {
+    if (kind !== 'circuit') return false
+    const missed = (starts.length * totalMs(state.off)) / all
+    return missed >= LEAST_MISSED && !starts.some((at) => contains(state.off, at))
+  })
+  return found.length === 1 ? found[0]!.of : null
 }

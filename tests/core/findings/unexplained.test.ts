@@ -69,6 +69,20 @@ describe('unexplained', () => {
     expect(unexplained(timeline, levels(warm), [line('load:oven', 5)], 24).follows).toBe('load:oven')
   })
 
+  it('names the one circuit without which they never came', () => {
+    // a pump of circuit 2 that nobody listed, every two hours; circuit 2 was off for a day, circuit 1 for another
+    const off = [START + 24 * HOUR, START + 48 * HOUR] as const
+    const circuit = (ref: string, from: number): Thing => ({
+      ...loadOn(ref, [[START, from] as const, [from + 24 * HOUR, END] as const], START, END),
+      of: `circuit:${ref}`,
+      kind: 'circuit',
+    })
+    const things = [circuit('1', START + 72 * HOUR), circuit('2', off[0])]
+    const pump = (t: number): number => (t % (2 * HOUR) < 20 * MINUTE && !(t >= off[0] && t < off[1]) ? 9 : 0)
+    const v = minutes.map((t) => 8 + pump(t))
+    expect(unexplained(timelineOf({ days: DAYS, things }), { t: minutes, v }, [], 24).follows).toBe('circuit:2')
+  })
+
   it('does not count the rise of a trip itself as seen apart', () => {
     const trips = [tripAt(START + 50 * HOUR)]
     const rise = (t: number): number => (t >= trips[0]!.from - 5 * MINUTE && t < trips[0]!.from ? 12 : 0)
