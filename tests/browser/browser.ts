@@ -48,7 +48,7 @@ export async function openPage(options: BrowserContextOptions = DESKTOP): Promis
   const context = await chromium.launchPersistentContext(profile, { executablePath, args: FLAGS, ...options })
   const page = context.pages()[0] ?? (await context.newPage())
   const complaints: string[] = []
-  page.on('pageerror', (error) => complaints.push(error.message))
+  page.on('pageerror', (error) => complaints.push(error.stack ?? error.message))
   page.on('console', (message) => {
     const expected = message.text().includes('401 (Unauthorized)') || message.text().includes('net::ERR_')
     if (message.type() === 'error' && !expected) complaints.push(message.text())

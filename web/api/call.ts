@@ -36,11 +36,16 @@ export async function call<T>(path: string, options: CallOptions = {}): Promise<
   }
   if (options.signal) init.signal = options.signal
   const answer = await fetch(`/api${path}`, init).catch((error: unknown) => {
-    if (error instanceof DOMException && error.name === 'AbortError') throw error
+    if (isAbort(error)) throw error
     throw new CallError(0, words.trouble.unreachable)
   })
   if (answer.status === 204) return undefined as T
-  const body: unknown = await answer.json().catch(() => null)
+  const body: unknown = await answer.json().catch((error: unknown) => {
+    // given up, or the network went, while the body came: no answer at all, never an empty one
+    if (isAbort(error)) throw error
+    if (answer.ok) throw new CallError(0, words.trouble.unreachable)
+    return null
+  })
   if (answer.ok) return body as T
   const problem = isProblem(body) ? body : null
   throw new CallError(answer.status, problem?.detail ?? words.trouble.status(answer.status), problem)
