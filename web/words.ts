@@ -89,6 +89,7 @@ export const words = {
   },
   answer: {
     heading: 'The answer',
+    jump: 'On this sheet',
     working: 'Working out the answer …',
     again: 'Reckoning with the new readings …',
     failed: 'The answer could not be worked out.',
@@ -108,7 +109,8 @@ export const words = {
     heading: 'The strip',
     leakage: 'Leakage, mA',
     milliamps: 'mA',
-    keys: 'Drag or pinch to zoom in; wheel, or + and −, zooms; arrow left and right move, Shift with them moves the cursor; Home shows everything.',
+    touch: 'Pinch to zoom in. One finger reads, and moves what is zoomed.',
+    keys: 'Drag to zoom in; wheel, or + and −, zooms; arrow left and right move, Shift with them moves the cursor; Home shows everything.',
     describe: 'Leakage over time with trips, circuits and loads',
     closer: 'Zoom in',
     wider: 'Zoom out',
@@ -116,7 +118,7 @@ export const words = {
     later: 'Later',
     whole: 'Whole period',
     showing: (span: string, length: string) => `${span} (${length})`,
-    cursorNone: 'Point at the strip to read everything at one moment.',
+    cursorNone: 'Touch or point at the strip to read everything at one moment.',
     at: (when: string) => when,
     reading: (text: string) => `leakage ${text}`,
     noReading: 'no leakage reading',
@@ -162,7 +164,7 @@ export const words = {
       Record<Role, string>
     >,
     share: (share: string) => `about ${share} of the trips`,
-    figures: 'Figures',
+    figures: 'Figures and methods',
     method: 'Method',
     next: 'To settle it',
     same: (names: string) => `The data cannot tell it from ${names}.`,
@@ -188,9 +190,11 @@ export const words = {
     bar: 'Who holds how much, from zero to the trip current',
     rest: 'Not switched in this period, or on no list',
     on: 'usually on',
-    off: 'usually off; when on it adds',
+    off: 'only while on',
     toggle: 'Take parts out to see what remains with everything else on.',
-    all: (ma: string, share: string) => `With everything on together: ${ma}, ${share} of the trip current.`,
+    all: (ma: string, share: string, holds: boolean) =>
+      `With everything on together up to ${ma}: ${share} of the trip current, ${holds ? 'which the device would hold' : 'more than the device holds'}.`,
+    sum: 'Rest and parts added up plainly. Leakages out of phase add up to less.',
     left: (ma: string, share: string, headroom: string) =>
       `Then ${ma} remains, ${share} of the trip current; headroom ${headroom}.`,
     over: (ma: string) => `${ma} too much`,
@@ -252,7 +256,7 @@ export const words = {
     proof: 'Is it fixed?',
     confidence: (share: string) => `Fixed with a probability of ${share}.`,
   },
-  notes: { heading: 'Notes of the program' },
+  notes: { heading: 'Notes of the program', more: (n: number) => count(n, 'more note') },
   report: {
     heading: 'Did the device go off?',
     which: 'Which device?',

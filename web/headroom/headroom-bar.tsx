@@ -11,6 +11,9 @@ interface HeadroomBarProps {
   readonly onToggle: (of: string) => void
 }
 
+/** The share of a phone's bar that one digit takes. */
+const DIGIT = 0.028
+
 /**
  * One bar from zero to the trip current. What is usually on is filled, what adds when on is hatched, the trip current
  * stands with its band. The list below it says the same in words, so the bar is for the eye and the pointer alone.
@@ -49,7 +52,7 @@ export function HeadroomBar({ budget, out, nameOf, onToggle }: HeadroomBarProps)
               style={{ left, width: at(part.ma) }}
               onClick={() => onToggle(part.of)}
             >
-              <span class="bar-number">{part.ma / full > 0.022 ? number : ''}</span>
+              <span class="bar-number">{part.ma / full > DIGIT * String(number).length ? number : ''}</span>
             </span>
           )
         })}

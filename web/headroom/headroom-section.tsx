@@ -57,13 +57,15 @@ export function HeadroomSection({ headroom, budget: lines, nameOf, shareOn }: He
           <PartList budget={budget} out={out} nameOf={nameOf} onToggle={toggle} />
           <p class="remains" role="status">
             {out.size === 0
-              ? say.all(milliamps(rest.ma), percent(rest.share))
+              ? say.all(milliamps(rest.ma), percent(rest.share), rest.headroom >= 0)
               : say.left(
                   milliamps(rest.ma),
                   percent(rest.share),
                   rest.headroom >= 0 ? milliamps(rest.headroom) : say.over(milliamps(-rest.headroom)),
                 )}{' '}
-            {out.size > 0 && <span class="aside">{say.bounds(milliamps(rest.least), milliamps(rest.most))}</span>}
+            <span class="aside">
+              {out.size === 0 ? say.sum : say.bounds(milliamps(rest.least), milliamps(rest.most))}
+            </span>
           </p>
           {out.size > 0 && (
             <button type="button" class="quiet" onClick={() => setOut(new Set())}>

@@ -35,7 +35,7 @@ export function SuspectCard({ suspect, nameOf }: SuspectCardProps): JSX.Element 
       {suspect.because.length > 0 && (
         <ul class="because">
           {suspect.because.map((reason) => (
-            <Because key={reason.text} reason={reason} />
+            <li key={reason.text}>{reason.text}</li>
           ))}
         </ul>
       )}
@@ -47,33 +47,37 @@ export function SuspectCard({ suspect, nameOf }: SuspectCardProps): JSX.Element 
           <strong>{say.next}:</strong> {suspect.next}
         </p>
       )}
+      {suspect.because.length > 0 && (
+        <details class="figures">
+          <summary>{say.figures}</summary>
+          {suspect.because.map((reason) => (
+            <Behind key={reason.text} reason={reason} />
+          ))}
+        </details>
+      )}
     </li>
   )
 }
 
-/** A reason in words; figures and method open on demand. */
-function Because({ reason }: { reason: Reason }): JSX.Element {
+/** What a reason rests on: its method and its figures. */
+function Behind({ reason }: { reason: Reason }): JSX.Element {
   const figures = Object.entries(reason.figures)
   return (
-    <li>
-      {reason.text}{' '}
-      <details class="figures">
-        <summary>{words.lineUp.figures}</summary>
-        {figures.length > 0 && (
-          <dl>
-            {figures.map(([name, value]) => (
-              <div key={name}>
-                <dt>{wordsOf(name)}</dt>
-                <dd>{figure(value)}</dd>
-              </div>
-            ))}
-          </dl>
-        )}
-        <p class="method">
-          {words.lineUp.method}: {reason.method}
-        </p>
-      </details>
-    </li>
+    <>
+      <p class="method">
+        {words.lineUp.method}: {reason.method}
+      </p>
+      {figures.length > 0 && (
+        <dl>
+          {figures.map(([name, value]) => (
+            <div key={name}>
+              <dt>{wordsOf(name)}</dt>
+              <dd>{figure(value)}</dd>
+            </div>
+          ))}
+        </dl>
+      )}
+    </>
   )
 }
 

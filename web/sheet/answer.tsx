@@ -38,6 +38,14 @@ export function Answer({ findings, busy, error, again }: AnswerProps): JSX.Eleme
       )}
       {error !== null && <Trouble error={error} what={say.failed} kept={findings !== null} again={again} />}
       <p class="caution">{say.caution}</p>
+      {findings !== null && (
+        <nav class="jump" aria-label={say.jump}>
+          <a href="#next-heading">{words.next.heading}</a>
+          <a href="#line-up-heading">{words.lineUp.heading}</a>
+          <a href="#headroom-heading">{words.headroom.heading}</a>
+          <a href="#trips-heading">{words.trips.heading}</a>
+        </nav>
+      )}
     </section>
   )
 }

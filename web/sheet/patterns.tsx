@@ -37,7 +37,7 @@ function pText(pattern: Pattern): JSX.Element | null {
   const { p, method } = pattern
   if (p === null || p === undefined) return null
   return (
-    <span class="aside" title={method}>
+    <span class="aside p-value" title={method}>
       {words.patterns.p(p < 0.001 ? '< 0.001' : p.toPrecision(2))}
     </span>
   )

@@ -69,9 +69,11 @@ export function SitesPage({ who }: { who: Whoami }): JSX.Element {
       {list.value !== null && shown.length === 0 && (
         <p class="state">{search.trim() === '' ? words.sites.none : words.sites.noMatch(search.trim())}</p>
       )}
-      <p class="hint">
-        {words.sites.fresh} <code>/api/sites</code> (<a href="/api">{words.sites.description}</a>).
-      </p>
+      {sites.length > 0 && (
+        <p class="hint">
+          {words.sites.fresh} <code>/api/sites</code> (<a href="/api">{words.sites.description}</a>).
+        </p>
+      )}
     </div>
   )
 }

@@ -6,7 +6,8 @@ import type { View } from './view.ts'
 /** What is drawn round the trace: limits across, nights and gaps behind, trips in front. */
 export interface Marks {
   readonly trip: { readonly value: number; readonly low: number; readonly high: number; readonly text: string }
-  readonly advised: { readonly value: number; readonly text: string }
+  /** `under`: its label stands below the line, where the trace mostly lies above it. */
+  readonly advised: { readonly value: number; readonly text: string; readonly under: boolean }
   readonly nights: readonly View[]
   readonly gaps: readonly View[]
   readonly trips: readonly TripMark[]
@@ -42,8 +43,8 @@ export function drawFront(plot: uPlot, marks: Marks, palette: Palette): void {
   clipped(plot, (ctx) => {
     const { top, height } = plot.bbox
     const ratio = uPlot.pxRatio
-    limit(plot, ctx, marks.advised.value, marks.advised.text, palette.soft, palette, [2, 4])
-    limit(plot, ctx, marks.trip.value, marks.trip.text, palette.trip, palette, [])
+    limit(plot, ctx, marks.advised, palette.soft, palette, [2, 4])
+    limit(plot, ctx, { ...marks.trip, under: false }, palette.trip, palette, [])
     ctx.strokeStyle = palette.trip
     ctx.lineWidth = ratio
     ctx.setLineDash([4 * ratio, 3 * ratio])
@@ -61,8 +62,7 @@ export function drawFront(plot: uPlot, marks: Marks, palette: Palette): void {
 function limit(
   plot: uPlot,
   ctx: CanvasRenderingContext2D,
-  value: number,
-  text: string,
+  { value, text, under }: Marks['advised'],
   colour: string,
   palette: Palette,
   dash: readonly number[],
@@ -82,10 +82,11 @@ function limit(
   ctx.textAlign = 'right'
   const x = plot.bbox.left + plot.bbox.width - 4 * ratio
   const label = ctx.measureText(text).width + 8 * ratio
+  const foot = under ? y + 18 * ratio : y
   ctx.fillStyle = palette.ground
-  ctx.fillRect(x + 4 * ratio - label, y - 17 * ratio, label, 16 * ratio)
+  ctx.fillRect(x + 4 * ratio - label, foot - 17 * ratio, label, 16 * ratio)
   ctx.fillStyle = colour
-  ctx.fillText(text, x, y - 2 * ratio)
+  ctx.fillText(text, x, foot - 2 * ratio)
 }
 
 /** Left edge and width of a stretch of time, device px; at least one px wide. */

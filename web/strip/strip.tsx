@@ -14,6 +14,7 @@ import { words } from '../words.ts'
 import type { Marks } from './draw-marks.ts'
 import { FlagRow } from './flag-row.tsx'
 import { gapsOf } from './gaps.ts'
+import { labelWidth } from './label-width.ts'
 import { LaneList } from './lane-list.tsx'
 import { type Lane, lanesOf } from './lanes.ts'
 import { usePalette } from './palette.ts'
@@ -68,7 +69,7 @@ export function Strip(props: StripProps): JSX.Element {
   }, [props.focus])
 
   const wide = width >= WIDE
-  const gutter = wide ? 190 : 38
+  const gutter = wide ? labelWidth(labelsOf(rcd, nameOf)) : 38
   const plotWidth = Math.max(0, width - gutter - RIGHT)
   const columns = Math.round(plotWidth * (devicePixelRatio || 1))
   const version = retry + live.readings
@@ -101,17 +102,17 @@ export function Strip(props: StripProps): JSX.Element {
   }, [leakage, wholeShown, onLastReading])
 
   const trips = useMemo(() => marksOf(findings.trips), [findings.trips])
-  const { tripMa, advisedShare } = findings.headroom
+  const { tripMa, advisedShare, standingMa } = findings.headroom
   const marks = useMemo<Marks>(() => {
     const advised = advisedShare * rcd.ratedMa
     return {
       trip: { ...tripMa, text: say.tripLine(milliamps(tripMa.value)) },
-      advised: { value: advised, text: say.advised(milliamps(advised)) },
+      advised: { value: advised, text: say.advised(milliamps(advised)), under: (standingMa?.p50 ?? 0) > advised },
       nights: nightsOf(site, whole),
       gaps: leakage === null ? [] : gapsOf(leakage),
       trips,
     }
-  }, [site, rcd, whole.from, whole.to, leakage, trips, tripMa, advisedShare, say])
+  }, [site, rcd, whole.from, whole.to, leakage, trips, tripMa, standingMa, advisedShare, say])
   const hand = useGestures({ view, whole, onView: setView, onCursor: setCursor })
   const shown = channel === null ? null : leakage
   const empty =
@@ -201,13 +202,22 @@ export function Strip(props: StripProps): JSX.Element {
         {records.value?.cut && <> · {say.cut}</>}
       </p>
       <p class="aside" id="strip-keys">
-        {say.keys}
+        <span class="by-hand">{say.keys}</span>
+        <span class="by-thumb">{say.touch}</span>
       </p>
       <p class="unseen" id="strip-summary">
         {summaryOf(findings, clock)}
       </p>
     </section>
   )
+}
+
+/** What stands left of the plot: the names of its lanes. */
+function labelsOf(rcd: Rcd, nameOf: (of: string) => string): string[] {
+  return rcd.circuits.flatMap((one) => [
+    nameOf(`circuit:${one.ref}`),
+    ...one.loads.map((load) => nameOf(`load:${load.ref}`)),
+  ])
 }
 
 /** Running channels of the device's circuits and loads, and the site's weather. */
