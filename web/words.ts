@@ -132,6 +132,7 @@ export const words = {
     trip: (n: number, when: string) => `Trip ${n}, ${when}`,
     tripBetween: (n: number, span: string) => `Trip ${n}, some time in ${span}`,
     tripLine: (ma: string) => `trips at ${ma}`,
+    tripBand: (range: string) => `trips somewhere in ${range}`,
     advised: (ma: string) => `0.3 IΔn = ${ma}`,
     rainLane: 'Rain',
     rainMost: (mm: number) => `up to ${fixed(mm, 1)}${THIN}mm`,

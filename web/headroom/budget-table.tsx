@@ -29,8 +29,8 @@ export function BudgetTable({ budget, nameOf }: BudgetTableProps): JSX.Element {
           {budget.parts.map((part) => (
             <tr key={part.of}>
               <th scope="row">{nameOf(part.of)}</th>
-              <td>{milliamps(part.ma)}</td>
-              <td>{intervalOf(part)}</td>
+              <td class="whole">{milliamps(part.ma)}</td>
+              <td class="whole">{intervalOf(part)}</td>
               <td>
                 {say.source[part.basis]}
                 {part.note !== null && <span class="aside"> {part.note}</span>}

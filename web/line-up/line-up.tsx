@@ -36,7 +36,7 @@ export function LineUp({ suspects, nameOf }: LineUpProps): JSX.Element {
   return (
     <section class="line-up" aria-labelledby="line-up-heading">
       <h2 id="line-up-heading">{say.heading}</h2>
-      {suspects.length === 0 ? <p class="state">{say.none}</p> : <p class="aside">{say.intro}</p>}
+      {judged.length === 0 && cleared.length === 0 ? <p class="state">{say.none}</p> : <p class="aside">{say.intro}</p>}
       {strong.length > 0 && list(strong)}
       {folded(say.weak(weak.length), weak)}
       {folded(say.cleared(cleared.length), cleared)}

@@ -1,7 +1,8 @@
 import type { JSX } from 'preact'
 import type { Reason, Suspect } from '../../core/contract/findings.ts'
-import { figure, odds, percent } from '../format/numbers.ts'
+import { odds, percent } from '../format/numbers.ts'
 import { words } from '../words.ts'
+import { figureWords } from './figure-words.ts'
 
 interface SuspectCardProps {
   readonly suspect: Suspect
@@ -61,7 +62,7 @@ export function SuspectCard({ suspect, nameOf }: SuspectCardProps): JSX.Element 
 
 /** What a reason rests on: its method and its figures. */
 function Behind({ reason }: { reason: Reason }): JSX.Element {
-  const figures = Object.entries(reason.figures)
+  const figures = Object.entries(reason.figures).map(([name, value]) => figureWords(name, value))
   return (
     <>
       <p class="method">
@@ -69,19 +70,14 @@ function Behind({ reason }: { reason: Reason }): JSX.Element {
       </p>
       {figures.length > 0 && (
         <dl>
-          {figures.map(([name, value]) => (
+          {figures.map(({ name, value }) => (
             <div key={name}>
-              <dt>{wordsOf(name)}</dt>
-              <dd>{figure(value)}</dd>
+              <dt>{name}</dt>
+              <dd>{value}</dd>
             </div>
           ))}
         </dl>
       )}
     </>
   )
-}
-
-/** `exposedHours` reads as `exposed hours`. */
-function wordsOf(name: string): string {
-  return name.replace(/([a-z0-9])([A-Z])/g, (_, a: string, b: string) => `${a} ${b.toLowerCase()}`)
 }

@@ -4,7 +4,7 @@ import type { Findings } from '../../core/contract/findings.ts'
 import type { Trace } from '../../core/contract/readings.ts'
 import type { Rcd, SiteOut } from '../../core/contract/site-sheet.ts'
 import { nightSpans } from '../../core/timeline/sun.ts'
-import { milliamps } from '../format/numbers.ts'
+import { milliampRange, milliamps } from '../format/numbers.ts'
 import type { SiteClock } from '../format/site-clock.ts'
 import { Loading } from '../frame/loading.tsx'
 import { Trouble } from '../frame/trouble.tsx'
@@ -106,7 +106,7 @@ export function Strip(props: StripProps): JSX.Element {
   const marks = useMemo<Marks>(() => {
     const advised = advisedShare * rcd.ratedMa
     return {
-      trip: { ...tripMa, text: say.tripLine(milliamps(tripMa.value)) },
+      trip: { ...tripMa, text: tripText(tripMa) },
       advised: { value: advised, text: say.advised(milliamps(advised)), under: (standingMa?.p50 ?? 0) > advised },
       nights: nightsOf(site, whole),
       gaps: leakage === null ? [] : gapsOf(leakage),
@@ -244,6 +244,11 @@ function nightsOf(site: SiteOut, whole: View): View[] {
   const nights: View[] = []
   for (let i = 0; i + 1 < flat.length; i += 2) nights.push({ from: flat[i]!, to: flat[i + 1]! })
   return nights
+}
+
+/** Without a test or levels at trips there is no one current to name. */
+function tripText({ value, low, high, basis }: Findings['headroom']['tripMa']): string {
+  return basis === 'limits' ? words.strip.tripBand(milliampRange(low, high)) : words.strip.tripLine(milliamps(value))
 }
 
 /** Half an hour on both sides of a trip. */

@@ -124,11 +124,6 @@ export function useGestures(input: GestureInput): Gestures {
       if (event.ctrlKey || event.metaKey || event.altKey) return
       if (press(event, now.current)) event.preventDefault()
     }
-    // two fingers never scroll the page, whichever way they part
-    const pinch = (event: TouchEvent): void => {
-      if (event.touches.length > 1 && event.cancelable) event.preventDefault()
-    }
-    element.addEventListener('touchstart', pinch, { passive: false })
     element.addEventListener('pointerdown', down)
     element.addEventListener('pointermove', move)
     element.addEventListener('pointerup', up)
@@ -138,7 +133,6 @@ export function useGestures(input: GestureInput): Gestures {
     element.addEventListener('keydown', key)
     addEventListener('wheel', scrolled, { passive: true })
     return () => {
-      element.removeEventListener('touchstart', pinch)
       element.removeEventListener('pointerdown', down)
       element.removeEventListener('pointermove', move)
       element.removeEventListener('pointerup', up)
