@@ -135,9 +135,10 @@ export const words = {
     tripBand: (range: string) => `trips somewhere in ${range}`,
     advised: (ma: string) => `0.3 IΔn = ${ma}`,
     rainLane: 'Rain',
-    rainMost: (mm: number) => `up to ${fixed(mm, 1)}${THIN}mm`,
+    rainMost: (mm: number) => (mm > 0 ? `up to ${fixed(mm, 1)}${THIN}mm` : 'none'),
     temperatureLane: 'Temperature',
-    temperatureRange: (low: number, high: number) => `${fixed(low, 0)} to ${fixed(high, 0)}${THIN}°C`,
+    temperatureRange: (low: number, high: number) =>
+      fixed(low, 0) === fixed(high, 0) ? `${fixed(low, 0)}${THIN}°C` : `${fixed(low, 0)} to ${fixed(high, 0)}${THIN}°C`,
     laneSummary: (share: string | null, starts: number) =>
       share === null ? 'not known when it ran' : `on for ${share} of the known time, started ${count(starts, 'time')}`,
     lanes: 'Circuits and loads',

@@ -3,6 +3,7 @@ import { readingsNews } from '../../web/api/live.ts'
 import { apiPath } from '../../web/api/paths.ts'
 import { figure, milliamps, odds, percent } from '../../web/format/numbers.ts'
 import { readRoute, sheetAddress } from '../../web/route/route.ts'
+import { words } from '../../web/words.ts'
 
 const plain = (text: string): string => text.replaceAll('\u202f', ' ')
 
@@ -76,5 +77,14 @@ describe('live news', () => {
       to: 2,
     })
     expect(readingsNews('not JSON')).toEqual({ kind: 'readings', channel: '', to: null })
+  })
+})
+
+describe('words for weather lanes', () => {
+  it('says one temperature once, and no rain as none', () => {
+    expect(words.strip.temperatureRange(16.1, 16.3)).toBe('16\u202f°C')
+    expect(words.strip.temperatureRange(6.2, 18.4)).toBe('6 to 18\u202f°C')
+    expect(words.strip.rainMost(0)).toBe('none')
+    expect(words.strip.rainMost(3.1)).toBe('up to 3.1\u202fmm')
   })
 })

@@ -79,7 +79,11 @@ const drawLine: Draw = (ctx, trace, view, w, h, ratio, palette) => {
     }
     const x = xOf(trace.t[i]!, view, w)
     if (pen) ctx.lineTo(x, y(value))
-    else ctx.moveTo(x, y(value))
+    else {
+      // a lone reading has no line to stand on: a short dash shows it
+      ctx.moveTo(x - 3 * ratio, y(value))
+      ctx.lineTo(x, y(value))
+    }
     pen = true
   })
   ctx.stroke()
