@@ -4,6 +4,9 @@ import { defineConfig } from 'vite'
 /** Where the development server finds the API; the built page is served by the program itself. */
 const api = process.env.LEAKTIDE_API ?? 'http://127.0.0.1:7250'
 
+// The page is always built as it is served; a build started by the tests would otherwise take their NODE_ENV.
+process.env.NODE_ENV = 'production'
+
 export default defineConfig({
   root: fileURLToPath(new URL('.', import.meta.url)),
   oxc: { jsx: { runtime: 'automatic', importSource: 'preact' } },
