@@ -1,6 +1,6 @@
 import type { BudgetLine, Findings, Headroom, Suspect } from '../contract/findings.ts'
 import type { Timeline } from '../timeline/timeline.ts'
-import { countOf, current, duration, figure, nameOf, sentence } from './words.ts'
+import { countOf, current, duration, nameOf, sentence } from './words.ts'
 
 /** Fewer trips than this prove almost nothing, whatever the odds say. */
 const FEW_TRIPS = 4
@@ -71,7 +71,14 @@ function shortReason(suspect: Suspect): string {
   if (figures === undefined || typeof figures.when !== 'string' || figures.window === 'any') return '.'
   const { tripsInside, trips, expectedInside, when } = figures
   if (typeof tripsInside !== 'number' || typeof expectedInside !== 'number') return '.'
-  return `: ${figure(tripsInside)} of ${String(trips)} trips ${when}, against ${Number(expectedInside.toPrecision(2))} by chance.`
+  return `: ${tripShare(tripsInside, Number(trips))} ${when}, against ${Number(expectedInside.toPrecision(2))} by chance.`
+}
+
+/** `9 of 11 trips`, `about 6.5 of 8 trips` where some are known as intervals only, `the one trip`. */
+function tripShare(inside: number, trips: number): string {
+  const whole = Math.round(inside)
+  if (Math.abs(inside - whole) >= 0.05) return `about ${inside.toFixed(1)} of ${countOf(trips, 'trip')}`
+  return trips === 1 && whole === 1 ? 'the one trip' : `${whole} of ${trips} trips`
 }
 
 function join(a: string, b: string): string {

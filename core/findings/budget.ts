@@ -6,7 +6,7 @@ import { channelFigure } from './own-channel.ts'
 import { type StepEstimate, stepRegression } from './step-regression.ts'
 import { type StepRows, stepRows } from './step-rows.ts'
 import { type SurveyFigure, surveyFigures } from './survey.ts'
-import { countOf, figure, nameOf, rounded } from './words.ts'
+import { countOf, figure, nameOf, rounded, sentence } from './words.ts'
 
 const NO_ROWS: StepRows = { steps: [], placebos: [] }
 
@@ -102,7 +102,7 @@ function channelNote(step: StepEstimate | undefined): string {
 }
 
 function surveyNote(survey: SurveyFigure, switching: { ma: number; half: number } | null): string {
-  const pairs = `By clamp survey, ${countOf(survey.pairs, 'pair')} of readings.`
+  const pairs = `${sentence(countOf(survey.pairs, 'pair'))} of readings.`
   if (switching === null) return pairs
   return `${pairs} Its switching in the log gives ${figure(switching.ma)} ± ${figure(switching.half)} mA.`
 }

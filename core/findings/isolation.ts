@@ -4,6 +4,8 @@ import { countOf, duration, figure, nameOf } from './words.ts'
 
 /** Odds with which a question shall be settled. */
 const SETTLED = 0.9
+/** From this probability on a suspect leads. */
+const LEADS = 0.6
 /** Longest isolation that is proposed, days; beyond it other ways are better. */
 const LONGEST_DAYS = 28
 
@@ -24,6 +26,11 @@ export function nextSteps(timeline: Timeline, hours: number, suspects: readonly 
   const days = -Math.log(1 - SETTLED) / rate / 24
   const whole = Math.max(1, Math.ceil(days))
   const steps: NextStep[] = []
+  const leading = suspects[0]
+  // what no switch isolates comes first when it leads: rain, a timer, the device itself
+  if (leading !== undefined && leading.probability >= LEADS && !/^(load:|circuit:|none$)/.test(leading.of)) {
+    steps.push({ isolate: null, days: 0, settles: 0, text: leading.next })
+  }
   const things = suspects
     .filter((s) => s.of.startsWith('load:') || s.of.startsWith('circuit:'))
     .map((s) => ({ s, doubt: entropy(s.probability) }))
@@ -36,7 +43,7 @@ export function nextSteps(timeline: Timeline, hours: number, suspects: readonly 
     steps.push({
       isolate: s.of,
       days: whole,
-      settles: Number((s.probability * quiet + (1 - s.probability) * quiet).toFixed(3)),
+      settles: Number(quiet.toFixed(3)),
       text: `${how(thing, nameOf(timeline, s.of))} for ${countOf(whole, 'day')}: at ${figure(rate * 24 * 7)} trips a week a quiet spell of that length would come by chance once in ${figure(1 / (1 - quiet))} times.`,
     })
   }
@@ -44,7 +51,7 @@ export function nextSteps(timeline: Timeline, hours: number, suspects: readonly 
     steps.push({
       isolate: null,
       days: whole,
-      settles: 0.5,
+      settles: 0,
       text: `Leave the logger for ${duration(whole * 24)} more: that catches at least one more trip with 90 % odds.`,
     })
   }

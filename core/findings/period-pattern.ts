@@ -43,7 +43,7 @@ export function periodPattern(timeline: Timeline, trips: readonly number[]): Pat
   const period = 1 / frequencies[seen.at]!
   if (p >= SPOKEN) {
     return {
-      verdict: `No period from ${figure(1 / frequencies[count - 1]!)} hours to ${figure(longest)} stands out.`,
+      verdict: `No period between ${figure(1 / frequencies[count - 1]!)} and ${figure(longest)} hours stands out.`,
       ...figures,
     }
   }

@@ -1,7 +1,7 @@
 import type { Pattern } from '../contract/findings.ts'
 import { holm, poissonRateRatio } from '../statistics/index.ts'
 import { contains, intersect, type Spans, totalMs } from '../timeline/spans.ts'
-import { countOf, figure, rounded } from './words.ts'
+import { countOf, rounded } from './words.ts'
 
 const HOUR_MS = 3_600_000
 /** Below this adjusted p a preference is spoken of as one. */
@@ -48,7 +48,7 @@ export function ratePattern(
   const { words, hours, within, seen, test } = tried[best]!
   const expected = (seen * hours[0]) / (hours[0] + hours[1])
   const p = adjusted[best]!
-  const count = `${countOf(within, 'trip')} of ${seen} fell ${words}; ${figure(expected)} would by chance`
+  const count = `${countOf(within, 'trip')} of ${seen} fell ${words}; ${Number(expected.toPrecision(2))} would by chance`
   const lead = p < SPOKEN ? (within > expected ? 'More' : 'Fewer') : null
   return {
     verdict: lead === null ? `No clear preference: ${count}.` : `${lead} trips than chance: ${count}.`,

@@ -41,7 +41,7 @@ function levelText(fact: TripFact, headroom: Headroom): string {
   const { value, low } = headroom.tripMa
   const left = low - fact.levelMa
   const room = left > 0 ? `, ${figure(value - fact.levelMa)} below the trip current` : ''
-  return `${figure(fact.levelMa)} mA before${room}, ${figure(fact.usualMa)} usual`
+  return `${figure(fact.levelMa)} mA before${room}, ${figure(fact.usualMa)} mA usual`
 }
 
 function courseText(timeline: Timeline, fact: TripFact): string {

@@ -53,7 +53,7 @@ describe('course of a trip', () => {
   it('is a step when the level rose in the last seconds', () => {
     const found = find(logged((s) => (s > 0 && s <= 42 ? 11.4 : 8.3)))
     expect(found.course).toBe('step')
-    expect(found.text).toMatch(/^11\.[34]\d? mA before.* 8\.3 usual; step of 3\.[01]\d? mA (40|45) s before/)
+    expect(found.text).toMatch(/^11\.[34]\d? mA before.* 8\.3 mA usual; step of 3\.[01]\d? mA (40|45) s before/)
   })
 
   it('is a step even when only the last reading shows it', () => {
