@@ -88,7 +88,6 @@ export const Subject = z
 export const Note = z
   .string()
   .max(2_000)
-  // biome-ignore format: one range a line reads worse
   .refine((s) => ![...s].some((c) => c < ' ' && c !== '\n' && c !== '\t'), 'control characters are not allowed')
 
 /** A name or label, one line. */

@@ -1,7 +1,7 @@
 import type { BudgetLine, Headroom } from '../contract/findings.ts'
 import { quantile } from '../statistics/quantile.ts'
 import type { Series } from '../timeline/series.ts'
-import { sliceSeries } from '../timeline/series.ts'
+import { joinSeries, sliceSeries } from '../timeline/series.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import { followsCurrent } from './follows-current.ts'
 import { minuteLevels } from './minute-levels.ts'
@@ -30,7 +30,7 @@ export interface LogView {
 const LEAST_RUNS = 3
 
 /** A figure of the budget whose interval does not hold zero. */
-export function isSure(line: BudgetLine): boolean {
+function isSure(line: BudgetLine): boolean {
   return line.basis === 'switching' && line.low !== null && line.low > 0
 }
 
@@ -85,14 +85,5 @@ function energisedMinutes(timeline: Timeline, leakage: Series): Series {
   const parts: Series[] = []
   for (let i = 0; i < energised.length; i += 2)
     parts.push(minuteLevels(sliceSeries(leakage, energised[i]!, energised[i + 1]!)))
-  const n = parts.reduce((sum, p) => sum + p.t.length, 0)
-  const t = new Float64Array(n)
-  const v = new Float64Array(n)
-  let at = 0
-  for (const part of parts) {
-    t.set(part.t, at)
-    v.set(part.v, at)
-    at += part.t.length
-  }
-  return { t, v }
+  return joinSeries(parts)
 }

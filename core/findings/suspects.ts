@@ -1,5 +1,6 @@
 import type { Grade, Reason, Role, Suspect } from '../contract/findings.ts'
-import { totalMs, union } from '../timeline/spans.ts'
+import { knownOf } from '../timeline/exposure.ts'
+import { totalMs } from '../timeline/spans.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
 import { nextFor } from './advice.ts'
 import { candidatesOf, type Measured } from './candidates.ts'
@@ -22,7 +23,6 @@ export interface Weighed {
   /** What the log says by itself. */
   readonly log: LogView
   readonly frame: Frame
-  readonly lineUp: LineUp
 }
 
 /**
@@ -51,7 +51,7 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const none = noneSuspect(timeline, frame, weighed)
   const all = [...judged, ...unjudged, none]
   all.sort((a, b) => b.probability - a.probability || (a.of < b.of ? -1 : 1))
-  return { suspects: all, log, frame, lineUp: weighed }
+  return { suspects: all, log, frame }
 }
 
 function judgedSuspect(
@@ -135,7 +135,7 @@ function roleOf(of: string, measured: Measured): Role {
 
 function unjudgedSuspect(timeline: Timeline, thing: Thing, none: number): Suspect {
   const odds = ODDS[thing.kind]
-  const known = totalMs(union(thing.state.on, thing.state.off)) > 0
+  const known = totalMs(knownOf(thing.state)) > 0
   const text = known
     ? `${sentence(thing.label)} never changed its state while trips could happen, so switching says nothing about it. That does not clear it.`
     : `Nobody knows when ${thing.label} was on, so nothing can be said about it. That does not clear it.`

@@ -24,6 +24,22 @@ export function seriesOf(t: ArrayLike<number>, v: ArrayLike<number>): Series {
   return { t: Float64Array.from(t), v: Float64Array.from(v) }
 }
 
+/** Pieces that follow each other in time, as one series. A single piece is given back as it is. */
+export function joinSeries(pieces: readonly Series[]): Series {
+  const [only] = pieces
+  if (pieces.length === 1 && only !== undefined) return only
+  const n = pieces.reduce((sum, { t }) => sum + t.length, 0)
+  const t = new Float64Array(n)
+  const v = new Float64Array(n)
+  let at = 0
+  for (const piece of pieces) {
+    t.set(piece.t, at)
+    v.set(piece.v, at)
+    at += piece.t.length
+  }
+  return { t, v }
+}
+
 /** First index whose time is at or after `ms`; the length when there is none. O(log n). */
 export function lowerBound(t: Float64Array, ms: number): number {
   let low = 0

@@ -1,5 +1,5 @@
 import type { Remedy, SiteTest } from '../contract/records.ts'
-import type { Channel, Circuit, Rcd, SiteSheet } from '../contract/site-sheet.ts'
+import type { Circuit, Rcd, SiteSheet } from '../contract/site-sheet.ts'
 import type { Kept } from './evidence.ts'
 import type { Exposure } from './exposure.ts'
 import type { Series } from './series.ts'
@@ -46,12 +46,6 @@ export interface Thing {
   readonly readEveryMs: number | null
   /** Its own leakage channel, when it has one. */
   readonly leakage: Series | null
-}
-
-/** A channel with its readings. */
-export interface ChannelSeries {
-  readonly channel: Channel
-  readonly series: Series
 }
 
 /**

@@ -1,6 +1,6 @@
 import type { Channel, RecordKind, SiteSheet, Trip } from '../../core/contract/index.ts'
 import type { Evidence, Kept } from '../../core/timeline/evidence.ts'
-import type { Series } from '../../core/timeline/series.ts'
+import { joinSeries, type Series } from '../../core/timeline/series.ts'
 import type { ChannelExtent, SiteRecord, StoredRecord, StoreReader } from '../store/port.ts'
 import { MAX_READINGS_LOADED, MAX_SPAN_MS, TooMuch } from './limits.ts'
 
@@ -105,7 +105,7 @@ async function loadSeries(
       }
       pieces.push(piece)
     }
-    if (pieces.length > 0) series.set(ref, joined(pieces))
+    if (pieces.length > 0) series.set(ref, joinSeries(pieces))
   }
   return series
 }
@@ -121,19 +121,4 @@ function channelsOf(sheet: SiteSheet, rcd: string): Channel[] {
     if (channel.load !== undefined) return loadRefs.has(channel.load)
     return true
   })
-}
-
-function joined(pieces: readonly Series[]): Series {
-  const [only] = pieces
-  if (pieces.length === 1 && only !== undefined) return only
-  const n = pieces.reduce((sum, { t }) => sum + t.length, 0)
-  const t = new Float64Array(n)
-  const v = new Float64Array(n)
-  let at = 0
-  for (const piece of pieces) {
-    t.set(piece.t, at)
-    v.set(piece.v, at)
-    at += piece.t.length
-  }
-  return { t, v }
 }

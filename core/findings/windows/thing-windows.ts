@@ -1,4 +1,5 @@
-import { intersect, type Spans, spansOf, subtract, union } from '../../timeline/spans.ts'
+import { afterEdges, knownOf } from '../../timeline/exposure.ts'
+import { intersect, type Spans, subtract } from '../../timeline/spans.ts'
 import type { Thing } from '../../timeline/timeline.ts'
 import type { ExposureWindow } from '../line-up.ts'
 import { type Frame, MINUTE_MS, normalised, windowOf } from './trip-share.ts'
@@ -23,14 +24,15 @@ const WHILE_ON = 0.41
  */
 export function thingWindows(frame: Frame, thing: Thing): ExposureWindow[] {
   const { on, off } = thing.state
-  const known = union(on, off)
+  const known = knownOf(thing.state)
   const { from, to } = frame.timeline
   const after = (isOn: boolean, minutes: number): Spans =>
-    spansOf(
-      thing.changes
-        .filter((c) => c.on === isOn)
-        .map((c) => [Math.max(from, c.at), Math.min(to, c.at + minutes * MINUTE_MS)] as const),
-    )
+    afterEdges(
+      thing.changes.filter((c) => c.on === isOn),
+      from,
+      to,
+      minutes * MINUTE_MS,
+    ).on
   const name = thing.kind === 'circuit' ? 'switched on' : 'its start'
   const plural = (minutes: number): string => (minutes === 1 ? 'a minute' : `${minutes} minutes`)
   const windows: (ExposureWindow | null)[] = [

@@ -199,3 +199,14 @@ export function withLoad(installation: Installation, load: LoadPlan, circuit: nu
     }),
   }))
 }
+
+/** The installation with so many times the capacitive standing leakage on every circuit. */
+export function withStanding(installation: Installation, times: number): Installation {
+  return withRcd(installation, (rcd) => ({
+    ...rcd,
+    circuits: rcd.circuits.map((circuit) => ({
+      ...circuit,
+      standing: { g: circuit.standing.g, b: circuit.standing.b * times },
+    })),
+  }))
+}

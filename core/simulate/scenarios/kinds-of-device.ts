@@ -1,7 +1,7 @@
 import { draws } from '../draws.ts'
 import { simulate } from '../simulate.ts'
 import type { Simulated } from '../simulated.ts'
-import { drawGround, withRcd } from './ground.ts'
+import { drawGround, withRcd, withStanding } from './ground.ts'
 import { tuned } from './tune.ts'
 
 /** The device itself opens far below half its rating; the leakage is as sound as anywhere. */
@@ -10,13 +10,7 @@ export function tooSensitive(seed: number): Simulated {
   return tuned(
     (strength) => ({
       ...ground,
-      installation: withRcd(ground.installation, (rcd) => ({
-        ...rcd,
-        circuits: rcd.circuits.map((circuit) => ({
-          ...circuit,
-          standing: { g: circuit.standing.g, b: circuit.standing.b * strength },
-        })),
-      })),
+      installation: withStanding(ground.installation, strength),
       truth: { rcd: 'A', kind: 'too-sensitive', causes: ['device'], answers: ['device'] },
     }),
     5,

@@ -3,7 +3,7 @@ import type { Installation, LoadPlan } from '../installation.ts'
 import type { Plan } from '../simulate.ts'
 import type { Simulated } from '../simulated.ts'
 import { drawFault, neededMa, pickCulprit } from './culprit.ts'
-import { drawGround, type Ground, withLoad, withRcd } from './ground.ts'
+import { drawGround, type Ground, withLoad, withRcd, withStanding } from './ground.ts'
 import { tuned } from './tune.ts'
 
 const HOUR = 3_600_000
@@ -96,13 +96,7 @@ export function standing(seed: number): Simulated {
   return tuned(
     (strength) => ({
       ...ground,
-      installation: withRcd(ground.installation, (rcd) => ({
-        ...rcd,
-        circuits: rcd.circuits.map((circuit) => ({
-          ...circuit,
-          standing: { g: circuit.standing.g, b: circuit.standing.b * strength },
-        })),
-      })),
+      installation: withStanding(ground.installation, strength),
       truth: { rcd: 'A', kind: 'standing', causes: ['standing'], answers: ['standing'] },
     }),
     5,
