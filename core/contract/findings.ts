@@ -104,6 +104,17 @@ export const TimedStep = z.object({
   schedule: z.string(),
   localTime: z.string().optional(),
   hours: z.number().optional(),
+  low: Milliamps.optional().meta({ description: 'lower quartile of the rises' }),
+  high: Milliamps.optional().meta({ description: 'upper quartile of the rises' }),
+  spreadMinutes: z.number().optional().meta({ description: 'nine of ten starts lie so near the schedule' }),
+  kept: Probability.optional().meta({ description: 'share of the starts due that came while the log looked' }),
+  p: z.number().optional(),
+  method: z.string().optional(),
+  localTimes: z.array(z.string()).optional().meta({ description: 'schedule clock: every start on the local day' }),
+  days: z.array(z.string()).optional().meta({ description: 'schedule clock: the weekdays on which it runs' }),
+  standsStill: z.boolean().optional().meta({ description: 'schedule period: its clock stands still without supply' }),
+  event: z.enum(['sunset', 'sunrise']).optional().meta({ description: 'schedule sun: what it follows' }),
+  offsetMinutes: z.number().optional().meta({ description: 'schedule sun: minutes after the event' }),
   text: z.string(),
 })
 
@@ -114,6 +125,9 @@ export const Patterns = z.object({
   rain: Pattern,
   temperature: Pattern,
   load: Pattern,
+  humidity: Pattern.optional().meta({ description: 'relative humidity and dew point' }),
+  weekday: Pattern.optional().meta({ description: 'weekdays against weekends, and single days of the week' }),
+  level: Pattern.optional().meta({ description: "the leakage level's own period" }),
   timedSteps: z.array(TimedStep),
 })
 
