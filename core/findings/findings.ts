@@ -14,7 +14,7 @@ import { patterns } from './patterns.ts'
 import { proof } from './proof.ts'
 import { runProfiles } from './run-profiles.ts'
 import { suspects } from './suspects.ts'
-import { timedSteps } from './timed-steps.ts'
+import { timedStepOf } from './timed/timed-step.ts'
 import { tripFindings } from './trips.ts'
 import { countOf, sentence } from './words.ts'
 
@@ -44,7 +44,7 @@ export function findings(evidence: Evidence): Findings {
     budget: lines,
     trips,
     suspects: weighed.suspects,
-    patterns: { ...patterns(timeline), timedSteps: timedSteps(weighed.log.unexplained, weighed.log.schedule) },
+    patterns: { ...patterns(timeline), timedSteps: weighed.log.timed.map(timedStepOf) },
     next: nextSteps(timeline, hours, weighed.suspects),
     proof: proof(timeline),
     notes: notesOf(timeline, weighed.frame.trips.length),

@@ -6,6 +6,7 @@ import type { Timeline } from '../timeline/timeline.ts'
 import { followsCurrent } from './follows-current.ts'
 import { minuteLevels } from './minute-levels.ts'
 import type { RunProfile } from './run-profiles.ts'
+import { type TimedCluster, timedClusters } from './timed/timed-clusters.ts'
 import { type Schedule, scheduleOf } from './timed-steps.ts'
 import { type Unexplained, unexplained } from './unexplained.ts'
 import { thinned } from './windows/held.ts'
@@ -22,6 +23,8 @@ export interface LogView {
   readonly unexplained: Unexplained | null
   /** When the excursions that no named load accounts for come. */
   readonly schedule: Schedule
+  /** Loads that nobody named and that keep a schedule, highest first; empty without a log. */
+  readonly timed: readonly TimedCluster[]
   /** Whether leakage follows the group's load current whichever load carries it. */
   readonly followsCurrent: boolean | null
 }
@@ -60,6 +63,7 @@ export function logView(
       liftShare,
       unexplained: null,
       schedule: { kind: 'none' },
+      timed: [],
       followsCurrent: null,
     }
   }
@@ -76,6 +80,7 @@ export function logView(
     liftShare,
     unexplained: found,
     schedule: found === null || found.follows !== null ? { kind: 'none' } : scheduleOf(timeline, found),
+    timed: found === null ? [] : timedClusters(timeline, found.remainder),
     followsCurrent: followsCurrent(timeline, minutes, budget),
   }
 }

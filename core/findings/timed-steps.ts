@@ -1,15 +1,12 @@
-import type { TimedStep } from '../contract/findings.ts'
 import { quantile } from '../statistics/quantile.ts'
 import { localClock } from '../timeline/local-clock.ts'
 import { eachSpan } from '../timeline/spans.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import { energisedClock } from './energised-clock.ts'
 import type { Unexplained } from './unexplained.ts'
-import { clockText, isDaily } from './windows/clock-windows.ts'
-import { current, figure, rounded } from './words.ts'
+import { isDaily } from './windows/clock-windows.ts'
 
-const MINUTE_MS = 60_000
-const HOUR_MS = 60 * MINUTE_MS
+const HOUR_MS = 3_600_000
 const DAY_MINUTES = 1_440
 /** Fewer steps than this show no schedule. */
 const LEAST_STEPS = 5
@@ -116,24 +113,4 @@ function periodOf(timeline: Timeline, starts: readonly number[]): Schedule | nul
     .filter(({ length }) => length >= most - ALIKE)
     .reduce((a, b) => (b.frequency < a.frequency ? b : a))
   return { kind: 'period', hours: 1 / plain.frequency }
-}
-
-/** The steps of one schedule in figures and words; empty without a schedule. */
-export function timedSteps(found: Unexplained | null, schedule: Schedule): TimedStep[] {
-  if (found === null) return []
-  if (schedule.kind === 'none') return []
-  const spans = [...eachSpan(found.excursions)]
-  const minutes = quantile(
-    spans.map((s) => (s.to - s.from) / MINUTE_MS),
-    0.5,
-  )
-  const about = `About ${current(found.heightMa)} mA for ${Math.round(minutes)} minutes`
-  const common = { ma: rounded(found.heightMa), minutes: rounded(minutes), count: spans.length }
-  if (schedule.kind === 'clock') {
-    const localTime = clockText(schedule.minute)
-    const text = `${about}, ${spans.length} times, round ${localTime}, on no listed load.`
-    return [{ ...common, schedule: 'clock', localTime, text }]
-  }
-  const text = `${about}, ${spans.length} times, every ${figure(schedule.hours)} h, on no listed load.`
-  return [{ ...common, schedule: 'period', hours: rounded(schedule.hours), text }]
 }

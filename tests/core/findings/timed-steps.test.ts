@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest'
-import { type Schedule, scheduleOf, timedSteps } from '../../../core/findings/timed-steps.ts'
+import { type Schedule, scheduleOf } from '../../../core/findings/timed-steps.ts'
 import type { Unexplained } from '../../../core/findings/unexplained.ts'
 import { seededRandom } from '../../../core/statistics/random.ts'
 import { spansOf } from '../../../core/timeline/spans.ts'
@@ -60,14 +60,5 @@ describe('scheduleOf', () => {
   it('says nothing of four steps', () => {
     const starts = [0, 1, 2, 3].map((d) => START + d * day)
     expect(scheduleOf(timelineOf({ days: 14 }), foundAt(starts)).kind).toBe('none')
-  })
-})
-
-describe('timedSteps', () => {
-  it('puts figures and schedule in words', () => {
-    const [step] = timedSteps(foundAt([START, START + day]), { kind: 'clock', minute: 190 })
-    expect(step).toMatchObject({ ma: 8, minutes: 20, count: 2, schedule: 'clock', localTime: '03:10' })
-    expect(step!.text).toBe('About 8.0 mA for 20 minutes, 2 times, round 03:10, on no listed load.')
-    expect(timedSteps(null, { kind: 'none' })).toEqual([])
   })
 })

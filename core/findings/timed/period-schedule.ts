@@ -1,0 +1,177 @@
+import { binomialUpperTail } from '../../statistics/binomial.ts'
+import { quantile } from '../../statistics/quantile.ts'
+import { isDaily } from '../windows/clock-windows.ts'
+import { dueStarts } from './due-starts.ts'
+import { LEAST_STARTS } from './gathering.ts'
+import type { RaisedRun } from './raised-runs.ts'
+import type { Kept, RunClock } from './run-clock.ts'
+import type { PeriodSchedule } from './schedule.ts'
+
+const HOUR_MS = 3_600_000
+const SHORTEST = 1
+const LONGEST = 240
+/** A period must turn so often within the span. */
+const LEAST_TURNS = 4
+/** Starts so many places apart are compared: one or two in between may be missing, or be another's. */
+const MOST_LAG = 3
+/** Logarithmic width of a bin of distances. */
+const BIN = 0.015
+const MOST_CANDIDATES = 3
+/** Share of a turn within which a start keeps the period. */
+const TOLERANCES = [0.02, 0.05, 0.1] as const
+/** Share of the starts due that came; half as long a period would keep half of them. */
+const LEAST_KEPT = 0.55
+/** Frequencies that differ by a tenth of a turn over the span count as tried, all down to an hour. */
+const OVERSAMPLE = 10
+/** Most places at which phases are summed to make a period exact. */
+const MOST_STARTS = 400
+/** Hours without supply that part a timer which stands still from the clock on the wall. */
+const PARTING_OUTAGE = 0.5
+
+/**
+ * The fixed period that runs keep best, on the wall's clock and on one that stands still while the device is open: candidates from the
+ * distances of starts, made exact by the greatest resultant near them and a straight line through the starts, tested by the
+ * binomial tail of starts on the comb, every frequency of the range paid for.
+ *
+ * @see Mardia & Jupp (2000), section 6.3 (resultants); Clopper & Pearson's tail as in binomialUpperTail
+ */
+export function periodSchedule(runs: readonly RaisedRun[], clock: RunClock): Kept<PeriodSchedule> | null {
+  if (runs.length < LEAST_STARTS) return null
+  let best: Kept<PeriodSchedule> | null = null
+  for (const on of ['wall', 'supply'] as const) {
+    if (on === 'supply' && clock.outageHours < 1 / 60) continue
+    const { of } = clock.hours[on]
+    const hours = Float64Array.from(runs, ({ from }) => of(from))
+    const span = of(clock.timeline.to)
+    for (const first of candidates(hours, span / LEAST_TURNS)) {
+      const comb = exact(hours, first, span)
+      if (comb === null) continue
+      const mayBeDaily = on === 'supply' && clock.outageHours > PARTING_OUTAGE
+      if (!mayBeDaily && isDaily(comb.period, span)) continue
+      const found = tested(runs, hours, comb, on, clock, span)
+      if (found !== null && (best === null || found.schedule.p < best.schedule.p)) best = found
+    }
+  }
+  return best
+}
+
+interface Comb {
+  readonly period: number
+  readonly phase: number
+}
+
+/** Periods that stand out among the distances of neighbouring starts, hours. */
+function candidates(hours: Float64Array, longest: number): number[] {
+  const counts = new Map<number, number>()
+  for (let lag = 1; lag <= MOST_LAG; lag++) {
+    for (let i = lag; i < hours.length; i++) {
+      const distance = hours[i]! - hours[i - lag]!
+      if (distance < SHORTEST || distance > Math.min(LONGEST, longest)) continue
+      const bin = Math.round(Math.log(distance) / BIN)
+      counts.set(bin, (counts.get(bin) ?? 0) + 1)
+    }
+  }
+  const smooth = [...counts.keys()].map((bin) => ({
+    bin,
+    count: (counts.get(bin - 1) ?? 0) + 2 * counts.get(bin)! + (counts.get(bin + 1) ?? 0),
+  }))
+  smooth.sort((a, b) => b.count - a.count || a.bin - b.bin)
+  const chosen: number[] = []
+  for (const { bin } of smooth) {
+    if (chosen.length === MOST_CANDIDATES) break
+    if (chosen.every((other) => Math.abs(other - bin) > 2)) chosen.push(bin)
+  }
+  return chosen.map((bin) => Math.exp(bin * BIN))
+}
+
+/** The comb near a period: greatest resultant on a fine grid, then a line through the starts on it. */
+function exact(hours: Float64Array, first: number, span: number): Comb | null {
+  const stride = Math.max(1, Math.ceil(hours.length / MOST_STARTS))
+  const step = 1 / (OVERSAMPLE * span)
+  const reach = Math.max(1, Math.ceil((2 * BIN) / first / step))
+  let comb: Comb = { period: first, phase: 0 }
+  let most = -1
+  for (let k = -reach; k <= reach; k++) {
+    const frequency = 1 / first + k * step
+    if (frequency <= 0) continue
+    let cos = 0
+    let sin = 0
+    for (let i = 0; i < hours.length; i += stride) {
+      const angle = 2 * Math.PI * frequency * hours[i]!
+      cos += Math.cos(angle)
+      sin += Math.sin(angle)
+    }
+    const length = Math.hypot(cos, sin)
+    if (length <= most) continue
+    most = length
+    comb = { period: 1 / frequency, phase: Math.atan2(sin, cos) / (2 * Math.PI * frequency) }
+  }
+  for (let round = 0; round < 2; round++) {
+    const line = throughStarts(hours, comb)
+    if (line === null) return null
+    comb = line
+  }
+  return comb
+}
+
+function throughStarts(hours: Float64Array, { period, phase }: Comb): Comb | null {
+  let [n, sk, sx, skk, skx] = [0, 0, 0, 0, 0]
+  for (const x of hours) {
+    const k = Math.round((x - phase) / period)
+    if (Math.abs(x - phase - k * period) > 0.1 * period) continue
+    n++
+    sk += k
+    sx += x
+    skk += k * k
+    skx += k * x
+  }
+  const spread = n * skk - sk * sk
+  if (n < LEAST_STARTS || spread <= 0) return null
+  const slope = (n * skx - sk * sx) / spread
+  return { period: slope, phase: (sx - slope * sk) / n }
+}
+
+function tested(
+  runs: readonly RaisedRun[],
+  hours: Float64Array,
+  { period, phase }: Comb,
+  on: 'wall' | 'supply',
+  clock: RunClock,
+  span: number,
+): Kept<PeriodSchedule> | null {
+  if (!(period >= SHORTEST)) return null
+  const tried = 2 * TOLERANCES.length * OVERSAMPLE * span * (1 / SHORTEST - 1 / LONGEST)
+  const away = hours.map((x) => Math.abs(x - phase - Math.round((x - phase) / period) * period))
+  let p = 1
+  let tolerance = 0
+  for (const share of TOLERANCES) {
+    const within = Math.max(share * period, (1.5 * clock.stepMs) / HOUR_MS)
+    const chance = Math.min(0.5, (2 * within) / period)
+    const hits = away.filter((x) => x <= within).length
+    const here = tried * binomialUpperTail(hits, hours.length, chance, 1 - chance)
+    if (here >= p) continue
+    p = here
+    tolerance = within
+  }
+  if (p >= 1) return null
+  const first = Math.ceil((quantile(hours, 0) - phase) / period - 0.5)
+  const last = Math.floor((quantile(hours, 1) - phase) / period + 0.5)
+  const due = Float64Array.from({ length: last - first + 1 }, (_, i) =>
+    clock.hours[on].instant(phase + (first + i) * period),
+  )
+  const fit = dueStarts(runs, due, tolerance * HOUR_MS, clock)
+  if (fit === null || fit.members.length < LEAST_STARTS) return null
+  const kept = fit.came.filter((yes) => yes).length / fit.came.length
+  if (kept < LEAST_KEPT) return null
+  const start = phase + first * period + fit.offsetMinutes / 60
+  const schedule: PeriodSchedule = {
+    kind: 'period',
+    hours: period,
+    on,
+    phaseHours: ((start % period) + period) % period,
+    spreadMinutes: fit.spreadMinutes,
+    kept,
+    p,
+  }
+  return { schedule, members: fit.members }
+}
