@@ -4,12 +4,15 @@ import { lowerBound } from '../../timeline/series.ts'
 import { type DueStarts, dueStarts } from './due-starts.ts'
 import {
   type DayPlace,
+  EXACT,
   type Gathering,
   gathering,
   LEAST_STARTS,
+  LOOSE,
   onCircle,
-  WINDOWS_TRIED,
+  ROUND,
   wayRound,
+  windowsTried,
 } from './gathering.ts'
 import type { RaisedRun } from './raised-runs.ts'
 import type { Kept, RunClock } from './run-clock.ts'
@@ -19,11 +22,15 @@ const MINUTE_MS = 60_000
 const HALF_DAY_MS = 12 * 60 * MINUTE_MS
 /** Least share of the starts due that came. */
 const LEAST_KEPT = 0.5
+/** The same for any set of days but workdays and weekends: a switch keeps to its days, people nearly do. */
+const LEAST_KEPT_ON_SOME = 0.8
 /** Sets of weekdays are spoken of when Fisher's test parts them so clearly; as many sets as this are paid for. */
 const PARTED = 0.01
 const SETS_TRIED = 20
 /** Most of the starts due on the other days that may have come by chance. */
 const STRAY = 0.15
+/** What keeps to the sun does so within so many minutes of sunset or sunrise. */
+const FARTHEST = 120
 const WORKDAYS: readonly Weekday[] = ['mon', 'tue', 'wed', 'thu', 'fri']
 const WEEKEND: readonly Weekday[] = ['sat', 'sun']
 
@@ -31,7 +38,7 @@ const WEEKEND: readonly Weekday[] = ['sat', 'sun']
 export function clockSchedule(runs: readonly RaisedRun[], clock: RunClock): Kept<ClockSchedule> | null {
   const { wall } = clock
   const places = runs.map(({ from }): DayPlace => ({ minute: wall.minuteOfDay(from), day: wall.dayNumber(from) }))
-  const found = gathering(places)
+  const found = gathering(places, EXACT)
   if (found === null) return null
   const minute = Math.floor(found.minute)
   const spans = wall.dailySpans(runs[0]!.from - HALF_DAY_MS, runs.at(-1)!.from + HALF_DAY_MS, minute, minute + 1)
@@ -53,7 +60,7 @@ export function clockSchedule(runs: readonly RaisedRun[], clock: RunClock): Kept
     days,
     spreadMinutes: fit.spreadMinutes,
     kept: shareOf(due),
-    p: Math.min(1, found.p * WINDOWS_TRIED * (days.length === 7 ? 1 : SETS_TRIED)),
+    p: Math.min(1, found.p * windowsTried(EXACT) * (days.length === 7 ? 1 : SETS_TRIED)),
   }
   return { schedule, members }
 }
@@ -65,14 +72,15 @@ export function sunSchedule(runs: readonly RaisedRun[], clock: RunClock): Kept<S
   for (const event of ['sunset', 'sunrise'] as const) {
     const times = clock.sun[event]
     if (times.length === 0) continue
-    const places = runs.map(({ from }): DayPlace => {
+    const places = runs.flatMap(({ from }): DayPlace[] => {
       const next = lowerBound(times, from - HALF_DAY_MS)
-      const at = times[Math.min(next, times.length - 1)]!
-      return { minute: onCircle((from - at) / MINUTE_MS), day: next }
+      const minute = (from - times[Math.min(next, times.length - 1)]!) / MINUTE_MS
+      return Math.abs(minute) > FARTHEST + ROUND ? [] : [{ minute: onCircle(minute), day: next }]
     })
-    const found = gathering(places)
+    const found = gathering(places, LOOSE)
     if (found === null) continue
     const offset = wayRound(found.minute, 0)
+    if (Math.abs(offset) > FARTHEST) continue
     const fit = dueStarts(
       runs,
       times.map((t) => t + offset * MINUTE_MS),
@@ -80,7 +88,7 @@ export function sunSchedule(runs: readonly RaisedRun[], clock: RunClock): Kept<S
       clock,
     )
     if (fit === null || fit.members.length < LEAST_STARTS || shareOf(fit.came) < LEAST_KEPT) continue
-    const p = Math.min(1, 2 * found.p * WINDOWS_TRIED)
+    const p = Math.min(1, 2 * found.p * windowsTried(LOOSE, 2 * FARTHEST))
     if (best !== null && p >= best.schedule.p) continue
     const schedule: SunSchedule = {
       kind: 'sun',
@@ -120,7 +128,8 @@ function weekdaysOf({ due, came }: DueStarts, weekday: (t: number) => Weekday): 
   for (const days of [often, WORKDAYS, WEEKEND]) {
     if (days.length === 0 || days.length === WEEKDAYS.length) continue
     const [inside, outside] = [sum(days), sum(WEEKDAYS.filter((day) => !days.includes(day)))]
-    if (outside.due === 0 || outside.came > STRAY * outside.due || inside.came < LEAST_KEPT * inside.due) continue
+    const least = days === often ? LEAST_KEPT_ON_SOME : LEAST_KEPT
+    if (outside.due === 0 || outside.came > STRAY * outside.due || inside.came < least * inside.due) continue
     const test = fisherExact([
       [inside.came, inside.due - inside.came],
       [outside.came, outside.due - outside.came],

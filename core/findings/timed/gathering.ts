@@ -1,18 +1,22 @@
 import { poissonUpperTail } from '../../statistics/poisson-cdf.ts'
 
 const CIRCLE = 1_440
-/** Widths of the window that are tried, minutes. */
-const WIDTHS = [3, 6, 12, 24] as const
+/** Widths of the window that are tried, minutes: a time switch is exact, … */
+export const EXACT: readonly number[] = [3, 6, 12]
+/** … a photocell sees clouds. */
+export const LOOSE: readonly number[] = [3, 6, 12, 24]
 /** The window is compared with so many minutes on each side of it, so that a habit of people is no timer, … */
-const ROUND = 90
+export const ROUND = 90
 /** … and with so many of its own widths next to it, at least so many minutes: a habit may have a peak. */
 const NEAR_WIDTHS = 1.5
 const NEAR = 10
 /** Fewer days than this show no schedule. */
 export const LEAST_STARTS = 5
 
-/** Windows tried round the clock: overlapping ones count as one and a half. */
-export const WINDOWS_TRIED: number = WIDTHS.reduce((sum, width) => sum + (1.5 * CIRCLE) / width, 0)
+/** Windows tried on so many minutes of the circle: overlapping ones count as one and a half. */
+export function windowsTried(widths: readonly number[], minutes: number = CIRCLE): number {
+  return widths.reduce((sum, width) => sum + (1.5 * minutes) / width, 0)
+}
 
 /** Starts on a circle of 1,440 minutes, each on a day of its own number. */
 export interface DayPlace {
@@ -39,45 +43,50 @@ export interface Gathering {
  *
  * @see Naus (1965), JASA 60, 532-538; Kulldorff (1997), Commun. Statist. Theory Meth. 26, 1481-1496
  */
-export function gathering(places: readonly DayPlace[]): Gathering | null {
+export function gathering(places: readonly DayPlace[], widths: readonly number[]): Gathering | null {
   if (places.length < LEAST_STARTS) return null
   const sorted = [...places].sort((a, b) => a.minute - b.minute)
   const n = sorted.length
   // laid out three times, so that windows and surroundings may pass midnight
   const at = (i: number): number => sorted[i % n]!.minute + CIRCLE * (Math.floor(i / n) - 1)
-  let best: { first: number; last: number; width: number; days: number; p: number } | null = null
-  for (const width of WIDTHS) {
-    const inside = new Map<number, number>()
+  const firstDay = sorted.reduce((least, { day }) => Math.min(least, day), Number.POSITIVE_INFINITY)
+  const days = sorted.reduce((most, { day }) => Math.max(most, day - firstDay + 1), 0)
+  const dayOf = (i: number): number => sorted[i % n]!.day - firstDay
+  let best = { first: 0, last: 0, width: 0, days: 0, expected: 1, excess: 0 }
+  for (const width of widths) {
+    const inside = new Int32Array(days)
+    let filled = 0
     const near = Math.max(NEAR, NEAR_WIDTHS * width)
     const wide = new Sliding(at, 3 * n, ROUND, width + ROUND)
     const close = new Sliding(at, 3 * n, near, width + near)
     let last = n
     for (let first = n; first < 2 * n; first++) {
       while (last < 3 * n && at(last) < at(first) + width) {
-        const { day } = sorted[last % n]!
-        inside.set(day, (inside.get(day) ?? 0) + 1)
+        if (inside[dayOf(last)]!++ === 0) filled++
         last++
       }
-      const days = inside.size
       const here = last - first
       const expected = Math.max(
         ((wide.countRound(first) - here + 1) * width) / (2 * ROUND),
         ((close.countRound(first) - here) * width) / (2 * near),
       )
-      if (days >= LEAST_STARTS) {
-        const p = poissonUpperTail(days, expected)
-        if (best === null || p < best.p) best = { first, last, width, days, p }
+      // Chernoff's exponent of the Poisson tail ranks the windows; the tail itself is taken once
+      const excess = filled > expected ? filled * Math.log(filled / expected) - (filled - expected) : 0
+      if (filled >= LEAST_STARTS && excess > best.excess) {
+        best = { first, last, width, days: filled, expected, excess }
       }
-      const { day } = sorted[first % n]!
-      const left = inside.get(day)! - 1
-      if (left === 0) inside.delete(day)
-      else inside.set(day, left)
+      if (--inside[dayOf(first)]! === 0) filled--
     }
   }
-  if (best === null) return null
+  if (best.excess === 0) return null
   const middle = at(Math.floor((best.first + best.last - 1) / 2))
   const other = at(Math.ceil((best.first + best.last - 1) / 2))
-  return { minute: onCircle((middle + other) / 2), width: best.width, days: best.days, p: best.p }
+  return {
+    minute: onCircle((middle + other) / 2),
+    width: best.width,
+    days: best.days,
+    p: poissonUpperTail(best.days, best.expected),
+  }
 }
 
 /** Counts places from `before` minutes before a place to `after` behind it, for places asked in order. */

@@ -1,5 +1,4 @@
 import { binomialUpperTail } from '../../statistics/binomial.ts'
-import { quantile } from '../../statistics/quantile.ts'
 import { isDaily } from '../windows/clock-windows.ts'
 import { dueStarts } from './due-starts.ts'
 import { LEAST_STARTS } from './gathering.ts'
@@ -17,8 +16,12 @@ const MOST_LAG = 3
 /** Logarithmic width of a bin of distances. */
 const BIN = 0.015
 const MOST_CANDIDATES = 3
-/** Share of a turn within which a start keeps the period. */
+/** Least distances in a bin and its neighbours, and how far they must stand above the bins round them: thermostats spread. */
+const LEAST_ALIKE = 3
+const SHARP = 2
+/** Share of a turn within which a start keeps the period, and at most so many hours: a timer is no tide. */
 const TOLERANCES = [0.02, 0.05, 0.1] as const
+const WIDEST = 0.25
 /** Share of the starts due that came; half as long a period would keep half of them. */
 const LEAST_KEPT = 0.55
 /** Frequencies that differ by a tenth of a turn over the span count as tried, all down to an hour. */
@@ -71,10 +74,16 @@ function candidates(hours: Float64Array, longest: number): number[] {
       counts.set(bin, (counts.get(bin) ?? 0) + 1)
     }
   }
-  const smooth = [...counts.keys()].map((bin) => ({
-    bin,
-    count: (counts.get(bin - 1) ?? 0) + 2 * counts.get(bin)! + (counts.get(bin + 1) ?? 0),
-  }))
+  const within = (bin: number, reach: number): number => {
+    let sum = 0
+    for (let b = bin - reach; b <= bin + reach; b++) sum += counts.get(b) ?? 0
+    return sum
+  }
+  const smooth = [...counts.keys()].flatMap((bin) => {
+    const peak = within(bin, 1)
+    const isSharp = peak >= LEAST_ALIKE && peak / 3 >= SHARP * (within(bin, 10) / 21)
+    return isSharp ? [{ bin, count: peak + counts.get(bin)! }] : []
+  })
   smooth.sort((a, b) => b.count - a.count || a.bin - b.bin)
   const chosen: number[] = []
   for (const { bin } of smooth) {
@@ -89,23 +98,27 @@ function exact(hours: Float64Array, first: number, span: number): Comb | null {
   const stride = Math.max(1, Math.ceil(hours.length / MOST_STARTS))
   const step = 1 / (OVERSAMPLE * span)
   const reach = Math.max(1, Math.ceil((2 * BIN) / first / step))
-  let comb: Comb = { period: first, phase: 0 }
-  let most = -1
-  for (let k = -reach; k <= reach; k++) {
-    const frequency = 1 / first + k * step
-    if (frequency <= 0) continue
-    let cos = 0
-    let sin = 0
-    for (let i = 0; i < hours.length; i += stride) {
-      const angle = 2 * Math.PI * frequency * hours[i]!
-      cos += Math.cos(angle)
-      sin += Math.sin(angle)
+  const lowest = Math.max(step, 1 / first - reach * step)
+  const cos = new Float64Array(2 * reach + 1)
+  const sin = new Float64Array(2 * reach + 1)
+  for (let i = 0; i < hours.length; i += stride) {
+    // the angle at each frequency is turned on from the one before
+    let x = Math.cos(2 * Math.PI * lowest * hours[i]!)
+    let y = Math.sin(2 * Math.PI * lowest * hours[i]!)
+    const turnX = Math.cos(2 * Math.PI * step * hours[i]!)
+    const turnY = Math.sin(2 * Math.PI * step * hours[i]!)
+    for (let k = 0; k < cos.length; k++) {
+      cos[k]! += x
+      sin[k]! += y
+      const next = x * turnX - y * turnY
+      y = x * turnY + y * turnX
+      x = next
     }
-    const length = Math.hypot(cos, sin)
-    if (length <= most) continue
-    most = length
-    comb = { period: 1 / frequency, phase: Math.atan2(sin, cos) / (2 * Math.PI * frequency) }
   }
+  let most = 0
+  for (let k = 1; k < cos.length; k++) if (Math.hypot(cos[k]!, sin[k]!) > Math.hypot(cos[most]!, sin[most]!)) most = k
+  const frequency = lowest + most * step
+  let comb: Comb = { period: 1 / frequency, phase: Math.atan2(sin[most]!, cos[most]!) / (2 * Math.PI * frequency) }
   for (let round = 0; round < 2; round++) {
     const line = throughStarts(hours, comb)
     if (line === null) return null
@@ -145,7 +158,7 @@ function tested(
   let p = 1
   let tolerance = 0
   for (const share of TOLERANCES) {
-    const within = Math.max(share * period, (1.5 * clock.stepMs) / HOUR_MS)
+    const within = Math.max(Math.min(WIDEST, share * period), (1.5 * clock.stepMs) / HOUR_MS)
     const chance = Math.min(0.5, (2 * within) / period)
     const hits = away.filter((x) => x <= within).length
     const here = tried * binomialUpperTail(hits, hours.length, chance, 1 - chance)
@@ -154,8 +167,8 @@ function tested(
     tolerance = within
   }
   if (p >= 1) return null
-  const first = Math.ceil((quantile(hours, 0) - phase) / period - 0.5)
-  const last = Math.floor((quantile(hours, 1) - phase) / period + 0.5)
+  const first = Math.ceil((hours[0]! - phase) / period - 0.5)
+  const last = Math.floor((hours.at(-1)! - phase) / period + 0.5)
   const due = Float64Array.from({ length: last - first + 1 }, (_, i) =>
     clock.hours[on].instant(phase + (first + i) * period),
   )

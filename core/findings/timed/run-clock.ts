@@ -18,7 +18,7 @@ export interface RunClock {
   readonly hours: Readonly<Record<'wall' | 'supply', HourClock>>
   /** Hours of the span without supply. */
   readonly outageHours: number
-  /** Whether a rise at this instant would have been seen. */
+  /** Whether a rise at this instant would have been seen: not when the device opened at once. */
   readonly isWatched: (ms: number) => boolean
   readonly stepMs: number
 }
@@ -42,7 +42,7 @@ export function runClock(timeline: Timeline, { watched, stepMs }: RaisedRuns): R
       supply: { of: under, instant: (h) => supplyInstant(timeline, h) },
     },
     outageHours: (timeline.to - timeline.from) / HOUR_MS - total,
-    isWatched: (ms) => contains(seen, ms - 2 * stepMs) && contains(seen, ms + stepMs),
+    isWatched: (ms) => contains(seen, ms - 2 * stepMs) && contains(seen, ms + 3 * stepMs),
     stepMs,
   }
 }

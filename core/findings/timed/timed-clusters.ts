@@ -16,18 +16,18 @@ const MINUTE_MS = 60_000
 const LEAST_P = 1e-4
 const MOST_CLUSTERS = 8
 /** More runs than this say no more; the highest are kept. */
-const MOST_RUNS = 4_000
-/** Groups tried: runs alike in height within this factor, each group reaching halfway into the next … */
-const HEIGHT_WIDTH = 1.5
-const HEIGHT_STEP = Math.sqrt(HEIGHT_WIDTH)
+const MOST_RUNS = 2_500
+/** Groups tried: runs alike in height within these factors, each group reaching into the next … */
+const HEIGHT_STEP = 1.22
+const HEIGHT_WIDTHS = [HEIGHT_STEP ** 2, HEIGHT_STEP ** 5] as const
 /** … and in length within this one, or of any length. */
 const LENGTH_WIDTH = 2
 const LENGTH_STEP = Math.SQRT2
 /** Runs on the schedule whose height is within this factor of the group's median are the same load's. */
-const SAME_HEIGHT = 1.4
+const SAME_HEIGHT = 1.7
 /** Clusters of one load that runs at several times a day differ by less than these factors. */
-const ALIKE_HEIGHT = 1.25
-const ALIKE_LENGTH = 1.4
+const ALIKE_HEIGHT = 1.4
+const ALIKE_LENGTH = 1.25
 const MOST_TIMES = 6
 /** Steps this near a named thing's switching may be its own; … */
 const SWITCHING_MS = 2 * MINUTE_MS
@@ -68,12 +68,15 @@ export function timedClusters(timeline: Timeline, remainder: Series): TimedClust
   const clock = runClock(timeline, raised)
   let left = highest(raised.runs)
   const found: Kept<TimedSchedule>[] = []
+  // groups of the same runs, in one round or the next, are asked once
   const known = new Map<string, Kept<TimedSchedule> | null>()
   for (let round = 0; round < MOST_CLUSTERS; round++) {
     const groups = groupsOf(left)
     let best: Kept<TimedSchedule> | null = null
-    for (const [key, runs] of groups) {
-      const kept = known.get(key) ?? bestSchedule(runs, clock)
+    for (const runs of groups.values()) {
+      const key = `${runs.length} ${runs[0]!.from} ${runs.at(-1)!.from} ${runs.reduce((sum, { from }) => sum + from, 0)}`
+      const before = known.get(key)
+      const kept = before === undefined ? bestSchedule(runs, clock) : before
       known.set(key, kept)
       if (kept !== null && isBetter(kept.schedule, best?.schedule)) best = kept
     }
@@ -88,8 +91,6 @@ export function timedClusters(timeline: Timeline, remainder: Series): TimedClust
     }
     const gone = new Set([...members, ...best.members])
     left = left.filter((run) => !gone.has(run))
-    // what the other groups keep is known already
-    for (const [key, runs] of groups) if (runs.some((run) => gone.has(run))) known.delete(key)
   }
   return joined(found)
     .map((kept) => clusterOf(kept, clock))
@@ -111,11 +112,13 @@ function groupsOf(runs: readonly RaisedRun[]): Map<string, RaisedRun[]> {
     else group.push(run)
   }
   for (const run of runs) {
-    for (const height of windowsOf(run.ma, HEIGHT_WIDTH, HEIGHT_STEP)) {
-      add(`${height}`, run)
-      const minutes = (run.to - run.from) / MINUTE_MS
-      // a run cut short belongs to its length at least; taking it for that length only loses few
-      for (const length of windowsOf(minutes, LENGTH_WIDTH, LENGTH_STEP)) add(`${height}/${length}`, run)
+    const minutes = (run.to - run.from) / MINUTE_MS
+    for (const [w, width] of HEIGHT_WIDTHS.entries()) {
+      for (const height of windowsOf(run.ma, width, HEIGHT_STEP)) {
+        add(`${w} ${height}`, run)
+        // a run cut short belongs to its length at least; taking it for that length only loses few
+        for (const length of windowsOf(minutes, LENGTH_WIDTH, LENGTH_STEP)) add(`${w} ${height}/${length}`, run)
+      }
     }
   }
   for (const [key, group] of groups) if (group.length < LEAST_STARTS) groups.delete(key)

@@ -17,7 +17,7 @@ describe('timedClusters', () => {
     expect(found).toHaveLength(1)
     const step = timedStepOf(found[0]!)
     expect(step.text).toMatch(
-      /^About 0\.(4[5-9]|5[0-5]?) mA for (39|40|41) minutes, every day at 03:(09|10|11) ± [123] minutes?, on no named load\.$/,
+      /^About 0\.(4[5-9]|5[0-5]?) mA for (3[89]|4[012]) minutes, every day at 03:(09|10|11) ± [123] minutes?, on no named load\.$/,
     )
     expect(step).toMatchObject({ schedule: 'clock', days: ['mon', 'tue', 'wed', 'thu', 'fri', 'sat', 'sun'] })
     expect(step.p).toBeLessThan(1e-4)
