@@ -10,7 +10,7 @@ import { coverage } from './coverage.ts'
 import { headroom } from './headroom.ts'
 import { nextSteps } from './isolation.ts'
 import { withLocalTimes } from './local-text.ts'
-import { patterns } from './patterns.ts'
+import { patterns } from './patterns/patterns.ts'
 import { proof } from './proof.ts'
 import { runProfiles } from './run-profiles.ts'
 import { suspects } from './suspects.ts'
@@ -34,6 +34,7 @@ export function findings(evidence: Evidence): Findings {
   const lines = budget(timeline)
   const trips = tripFindings(timeline, lines, room)
   const weighed = suspects(timeline, { trips, profiles: runProfiles(timeline, lines), budget: lines, headroom: room })
+  const { log } = weighed
   return {
     rcd: evidence.rcd,
     from: writeInstant(timeline.from),
@@ -44,7 +45,10 @@ export function findings(evidence: Evidence): Findings {
     budget: lines,
     trips,
     suspects: weighed.suspects,
-    patterns: { ...patterns(timeline), timedSteps: weighed.log.timed.map(timedStepOf) },
+    patterns: {
+      ...patterns(timeline, { ...log, remainder: log.unexplained?.remainder ?? log.minutes }),
+      timedSteps: log.timed.map(timedStepOf),
+    },
     next: nextSteps(timeline, hours, weighed.suspects),
     proof: proof(timeline),
     notes: notesOf(timeline, weighed.frame.trips.length),

@@ -1,7 +1,7 @@
-import type { Pattern } from '../contract/findings.ts'
-import { holm, poissonRateRatio } from '../statistics/index.ts'
-import { contains, intersect, type Spans, totalMs } from '../timeline/spans.ts'
-import { countOf, rounded } from './words.ts'
+import type { Pattern } from '../../contract/findings.ts'
+import { holm, poissonRateRatio } from '../../statistics/index.ts'
+import { contains, intersect, type Spans, totalMs } from '../../timeline/spans.ts'
+import { countOf, rounded } from '../words.ts'
 
 const HOUR_MS = 3_600_000
 /** Below this adjusted p a preference is spoken of as one. */
@@ -53,6 +53,7 @@ export function ratePattern(
   return {
     verdict: lead === null ? `No clear preference: ${count}.` : `${lead} trips than chance: ${count}.`,
     p: rounded(p),
+    words,
     method: 'exact comparison of two Poisson rates (Przyborowski & Wilenski 1940), adjusted by Holm (1979)',
     trips: seen,
     within,

@@ -1,8 +1,9 @@
-import type { Pattern } from '../contract/findings.ts'
-import { seededRandom } from '../statistics/random.ts'
-import { type Spans, totalMs } from '../timeline/spans.ts'
-import type { Timeline } from '../timeline/timeline.ts'
-import { figure, rounded } from './words.ts'
+import type { Pattern } from '../../contract/findings.ts'
+import { seededRandom } from '../../statistics/random.ts'
+import { type Spans, totalMs } from '../../timeline/spans.ts'
+import type { Timeline } from '../../timeline/timeline.ts'
+import { isDaily } from '../windows/clock-windows.ts'
+import { figure, rounded } from '../words.ts'
 
 const HOUR_MS = 3_600_000
 const SHORTEST_HOURS = 1
@@ -11,10 +12,14 @@ const LONGEST_HOURS = 240
 const LEAST_TURNS = 3
 const OVERSAMPLE = 3
 const MOST_FREQUENCIES = 1_200
-const MOST_SIMULATIONS = 199
+const MOST_SIMULATIONS = 399
 /** Turns of angles that the simulation may cost. */
-const COST = 4_000_000
+const COST = 8_000_000
 const SPOKEN = 0.05
+/** Above this p a period is spoken of with doubt. */
+const SURE = 0.01
+/** Share of the largest power that counts as as large. */
+const ALIKE = 0.9
 
 /**
  * Whether trips keep a period from an hour to ten days: Rayleigh's power at every period, the largest compared with
@@ -47,8 +52,10 @@ export function periodPattern(timeline: Timeline, trips: readonly number[]): Pat
       ...figures,
     }
   }
-  const whole = Math.abs(period - 24) < 0.5 ? ': the same time of day' : ''
-  return { verdict: `Trips keep a period of ${figure(period)} hours${whole}.`, ...figures, hours: rounded(period) }
+  const whole = isDaily(period, spanHours) ? ': the same time of day' : ''
+  const keep = p <= SURE ? 'Trips keep' : 'Trips may keep'
+  const doubt = p <= SURE ? '' : `; one in ${Math.round(1 / p)} logs without a period looks so`
+  return { verdict: `${keep} a period of ${figure(period)} hours${whole}${doubt}.`, ...figures, hours: rounded(period) }
 }
 
 /** Largest Rayleigh power over evenly spaced frequencies; each angle is turned on from the one before. */
@@ -71,15 +78,18 @@ function strongest(hours: readonly number[], frequencies: Float64Array): { power
     }
   }
   let power = 0
+  for (let k = 0; k < count; k++) power = Math.max(power, (c[k]! ** 2 + s[k]! ** 2) / hours.length)
+  // whole fractions of a period fit about as well as it does: the longest is the plain one
   let at = 0
-  for (let k = 0; k < count; k++) {
-    const here = (c[k]! ** 2 + s[k]! ** 2) / hours.length
-    if (here > power) {
-      power = here
-      at = k
-    }
-  }
-  return { power, at }
+  while (at + 1 < count && c[at]! ** 2 + s[at]! ** 2 < ALIKE * power * hours.length) at++
+  return { power, at: peakNear(c, s, at) }
+}
+
+/** The top of the peak that begins to rise at `from`. */
+function peakNear(c: Float64Array, s: Float64Array, from: number): number {
+  let at = from
+  while (at + 1 < c.length && Math.hypot(c[at + 1]!, s[at + 1]!) > Math.hypot(c[at]!, s[at]!)) at++
+  return at
 }
 
 /** The hour since `from` below which a share of the energised time lies. */

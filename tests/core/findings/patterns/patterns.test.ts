@@ -1,10 +1,10 @@
 import { describe, expect, it } from 'vitest'
-import { patterns } from '../../../core/findings/patterns.ts'
-import { seededRandom } from '../../../core/statistics/random.ts'
-import { seriesOf } from '../../../core/timeline/series.ts'
-import { clip, spansOf } from '../../../core/timeline/spans.ts'
-import type { Timeline } from '../../../core/timeline/timeline.ts'
-import { HOUR, MINUTE, START, timelineOf, tripAt } from './timeline-of.ts'
+import { patterns } from '../../../../core/findings/patterns/patterns.ts'
+import { seededRandom } from '../../../../core/statistics/random.ts'
+import { seriesOf } from '../../../../core/timeline/series.ts'
+import { clip, spansOf } from '../../../../core/timeline/spans.ts'
+import type { Timeline } from '../../../../core/timeline/timeline.ts'
+import { HOUR, MINUTE, START, timelineOf, tripAt } from '../timeline-of.ts'
 
 const DAYS = 28
 
