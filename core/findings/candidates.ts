@@ -30,6 +30,9 @@ const UNDER_A_BAD_DEVICE = 0.001
 /** Odds of a device that a test, or its own trips, showed to open too soon: measured, not guessed. */
 const BAD_DEVICE = 600
 
+/** Something on no sheet that comes by the clock, a period or the sun is one and the same thing. */
+const TIMERS: ReadonlySet<string> = new Set(['clock', 'period', 'sun', 'unlisted'])
+
 /** Times of people and loggers differ by this much. */
 const TOGETHER_MS = 60_000
 
@@ -66,7 +69,11 @@ export function candidatesOf(
       kind === 'supply'
         ? marked(windows, marks(kind, 'at-once'), 1)
         : [...marked(windows, marks(kind, 'at-once'), 0.5), ...marked(windows, marks(kind, 'visibly'), 0.5)]
-    list.push({ of, odds, windows: paced })
+    const thing = timeline.things.find((t) => t.of === of)
+    const candidate: Candidate = { of, odds, windows: paced }
+    if (TIMERS.has(of)) list.push({ ...candidate, family: 'timer' })
+    else if (thing?.kind === 'load') list.push({ ...candidate, partOf: `circuit:${thing.circuit}` })
+    else list.push(candidate)
   }
   const byThing = new Map(
     timeline.things.map((thing) => [thing.of, thingWindows(frame, heldToTrips(thing, frame.trips))]),
@@ -107,7 +114,8 @@ export function candidatesOf(
 
 function always(frame: Frame, words: string, prior: number): ExposureWindow[] {
   const inside = new Float64Array(frame.trips.length).fill(1)
-  return [{ key: 'any', words, prior, hours: frame.hours, inside, weights: inside }]
+  const hoursBy = frame.habits.map(() => frame.hours)
+  return [{ key: 'any', words, prior, hoursBy, inside, insideHours: frame.hours, weightsBy: frame.habits.map(() => inside) }]
 }
 
 /**

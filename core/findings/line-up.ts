@@ -2,22 +2,39 @@ import { CoreError } from '../errors.ts'
 import { type CauseWindow, type Marginal, marginal } from './cause-sets.ts'
 
 /** One way in which a suspect may act, with what the trips say about it. */
-export interface ExposureWindow extends CauseWindow {
+export interface ExposureWindow {
   /** Short name within the suspect: `on`, `after-on-3`, `02:40+20`. */
   readonly key: string
   /** In words, to follow "trips fell …": `within 3 minutes of its start`. */
   readonly words: string
   /** Prior weight among the windows of its suspect; they sum to 1. */
   readonly prior: number
-  /** Share of each trip's time inside the exposure, before leakage evidence: 0, 1, or between for an interval. */
+  /** Exposed energised hours under each habit of the site, times what an hour of them weighs. */
+  readonly hoursBy: readonly number[]
+  /** `CauseWindow.weights` under each habit. */
+  readonly weightsBy: readonly Float64Array[]
+  /** What is spoken of: share of each trip's time inside, before leakage evidence (0, 1, or between), and hours inside. */
   readonly inside: Float64Array
+  readonly insideHours: number
 }
+
+/** A way in which trips of any cause may spread over the day, with what they say for it. */
+export interface Pace {
+  readonly prior: number
+  readonly logDensity: number
+}
+
+const EVEN: readonly Pace[] = [{ prior: 1, logDensity: 0 }]
 
 export interface Candidate {
   readonly of: string
   /** Prior odds of being a cause. */
   readonly odds: number
   readonly windows: readonly ExposureWindow[]
+  /** Suspects of one family are the same thing under several names: never two of them in one set. */
+  readonly family?: string
+  /** The suspect that this one is part of (a load of its circuit): never both in one set. */
+  readonly partOf?: string
 }
 
 export interface Standing {
@@ -50,6 +67,9 @@ const LEAST_DOUBT = 0.01
 /** Each cause beyond the first is so much rarer still: two faults at once are no coincidence of two ordinary ones. */
 const EXTRA_CAUSE = 0.15
 
+/** Trips of which no listed thing is the cause are so much rarer than the odds of the suspects alone say. */
+const NO_CAUSE = 0.5
+
 /** How many windows of a suspect go on to sets of two and three, and how many suspects. */
 const WINDOWS_IN_PAIRS = 3
 const WINDOWS_IN_TRIPLES = 2
@@ -60,36 +80,43 @@ interface Weighed {
   readonly members: readonly number[]
   readonly windows: readonly ExposureWindow[]
   readonly logWeight: number
-  readonly marginal: Marginal
+  /** Expected number of trips that each member made. */
+  readonly expected: readonly number[]
 }
 
 /**
  * Bayesian variable selection over sets of at most three causes of a point process: each suspect adds a gamma-
  * distributed intensity while its exposure holds, windows are averaged over, sets without hope are left out
- * (Occam's window: Madigan & Raftery 1994). `hours` is energised time, `trips` their number. Independent of the
- * order of trips and candidates up to rounding. Cost: windows × trips² and a bounded number of sets.
+ * (Occam's window: Madigan & Raftery 1994). `hours` is energised time, `trips` their number, `paces` the habits under which
+ * exposures were measured, averaged over. Independent of the order of trips and candidates up to rounding. Cost: windows ×
+ * trips² and a bounded number of sets.
  *
  * @throws {CoreError} out_of_range without time, unequal_lengths when a window does not weigh every trip
  */
-export function lineUp(hours: number, trips: number, candidates: readonly Candidate[]): LineUp {
+export function lineUp(
+  hours: number,
+  trips: number,
+  candidates: readonly Candidate[],
+  paces: readonly Pace[] = EVEN,
+): LineUp {
   if (!(hours > 0)) throw new CoreError('out_of_range', `lineUp needs energised hours, got ${hours}`)
   for (const { windows } of candidates) {
     for (const w of windows) {
-      if (w.weights.length !== trips) {
-        throw new CoreError('unequal_lengths', `lineUp got ${w.weights.length} weights for ${trips} trips`)
+      for (const { length } of w.weightsBy) {
+        if (length !== trips) throw new CoreError('unequal_lengths', `lineUp got ${length} weights for ${trips} trips`)
       }
     }
   }
-  const empty = marginal(hours, trips, [])
-  const sets: Weighed[] = [{ members: [], windows: [], logWeight: empty.log, marginal: empty }]
+  const sets: Weighed[] = []
   const add = (members: readonly number[], windows: readonly ExposureWindow[]): number => {
-    const m = marginal(hours, trips, windows)
-    let logWeight = m.log + Math.max(0, members.length - 1) * Math.log(EXTRA_CAUSE)
+    const { log, expected } = overPaces(hours, trips, windows, paces)
+    let logWeight = log + (members.length === 0 ? Math.log(NO_CAUSE) : (members.length - 1) * Math.log(EXTRA_CAUSE))
     for (const c of members) logWeight += Math.log(candidates[c]!.odds)
     for (const w of windows) logWeight += Math.log(w.prior)
-    sets.push({ members, windows, logWeight, marginal: m })
+    sets.push({ members, windows, logWeight, expected })
     return logWeight
   }
+  const emptyLog = add([], [])
 
   const singles = candidates.map((candidate, c) => {
     const scored = candidate.windows.map((window) => ({ window, log: add([c], [window]) }))
@@ -100,9 +127,12 @@ export function lineUp(hours: number, trips: number, candidates: readonly Candid
   ranked.sort((a, b) => b.log - a.log || a.c - b.c)
 
   const best = (s: (typeof ranked)[number], n: number): ExposureWindow[] => s.scored.slice(0, n).map((x) => x.window)
+  const isOneThing = (a: (typeof ranked)[number], b: (typeof ranked)[number]): boolean =>
+    areOneThing(candidates[a.c]!, candidates[b.c]!)
   const inPairs = ranked.slice(0, SUSPECTS_IN_PAIRS)
   for (let i = 0; i < inPairs.length; i++) {
     for (let j = i + 1; j < inPairs.length; j++) {
+      if (isOneThing(inPairs[i]!, inPairs[j]!)) continue
       for (const a of best(inPairs[i]!, WINDOWS_IN_PAIRS)) {
         for (const b of best(inPairs[j]!, WINDOWS_IN_PAIRS)) add([inPairs[i]!.c, inPairs[j]!.c], [a, b])
       }
@@ -112,6 +142,8 @@ export function lineUp(hours: number, trips: number, candidates: readonly Candid
   for (let i = 0; i < inTriples.length; i++) {
     for (let j = i + 1; j < inTriples.length; j++) {
       for (let k = j + 1; k < inTriples.length; k++) {
+        if (isOneThing(inTriples[i]!, inTriples[j]!)) continue
+        if (isOneThing(inTriples[i]!, inTriples[k]!) || isOneThing(inTriples[j]!, inTriples[k]!)) continue
         for (const a of best(inTriples[i]!, WINDOWS_IN_TRIPLES)) {
           for (const b of best(inTriples[j]!, WINDOWS_IN_TRIPLES)) {
             for (const d of best(inTriples[k]!, WINDOWS_IN_TRIPLES)) {
@@ -122,7 +154,28 @@ export function lineUp(hours: number, trips: number, candidates: readonly Candid
       }
     }
   }
-  return summarise(trips, candidates, sets, empty.log)
+  return summarise(trips, candidates, sets, emptyLog - Math.log(NO_CAUSE))
+}
+
+function areOneThing(a: Candidate, b: Candidate): boolean {
+  return (a.family !== undefined && a.family === b.family) || a.partOf === b.of || b.partOf === a.of
+}
+
+/** The marginal likelihood of one set, averaged over the habits. */
+function overPaces(
+  hours: number,
+  trips: number,
+  windows: readonly ExposureWindow[],
+  paces: readonly Pace[],
+): { log: number; expected: number[] } {
+  const each = paces.map((pace, k): Marginal => {
+    const causes = windows.map((w): CauseWindow => ({ hours: w.hoursBy[k]!, weights: w.weightsBy[k]! }))
+    const { log, expected } = marginal(hours, trips, causes)
+    return { log: log + pace.logDensity + Math.log(pace.prior), expected }
+  })
+  const log = logSum(each.map((m) => m.log))
+  const expected = windows.map((_, j) => each.reduce((sum, m) => sum + Math.exp(m.log - log) * m.expected[j]!, 0))
+  return { log, expected }
 }
 
 function summarise(
@@ -145,7 +198,7 @@ function summarise(
     if (set.members.length === 0) none += p
     set.members.forEach((c, place) => {
       probability[c]! += p
-      if (trips > 0) share[c]! += (p * set.marginal.expected[place]!) / trips
+      if (trips > 0) share[c]! += (p * set.expected[place]!) / trips
       const windows = perWindow[c]!
       windows.set(set.windows[place]!, (windows.get(set.windows[place]!) ?? 0) + p)
     })

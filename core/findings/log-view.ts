@@ -11,6 +11,15 @@ import { type Schedule, scheduleOf } from './timed-steps.ts'
 import { type Unexplained, unexplained } from './unexplained.ts'
 import { thinned } from './windows/held.ts'
 
+/** How far a thing's runs lift the level. */
+export interface Lift {
+  /** What a run usually and in one of ten cases adds at its height, mA. */
+  readonly usualMa: number
+  readonly topMa: number
+  /** The latter over the usual headroom: from about two thirds on such runs fire trips. */
+  readonly reach: number
+}
+
 /** What the leakage log says that bears on every suspect; computed once. Nulls without a log. */
 export interface LogView {
   /** Minute means of energised time. */
@@ -18,8 +27,8 @@ export interface LogView {
   readonly tripMa: number
   /** Median standing leakage over the trip current. */
   readonly usualShare: number | null
-  /** By thing: how far its runs lift the level, over the trip current; only where the log could see it. */
-  readonly liftShare: ReadonlyMap<string, number>
+  /** By thing: what its runs do to the level; only where the log could see it. */
+  readonly lifts: ReadonlyMap<string, Lift>
   readonly unexplained: Unexplained | null
   /** When the excursions that no named load accounts for come. */
   readonly schedule: Schedule
@@ -32,9 +41,9 @@ export interface LogView {
 /** Runs or switchings that a lift must rest on. */
 const LEAST_RUNS = 3
 
-/** A figure of the budget whose interval does not hold zero. */
-function isSure(line: BudgetLine): boolean {
-  return line.basis === 'switching' && line.low !== null && line.low > 0
+/** What is usually left below the trip current, mA; where the usual level stands at or above it, a tenth of it. */
+function roomOf({ tripMa, standingMa }: Headroom): number {
+  return Math.max(tripMa.value - (standingMa?.p50 ?? 0), 0.1 * tripMa.value)
 }
 
 /** Reads the log once for the line-up. Linear in readings. */
@@ -45,22 +54,26 @@ export function logView(
   headroom: Headroom,
 ): LogView {
   const tripMa = headroom.tripMa.value
-  const liftShare = new Map<string, number>()
-  for (const thing of timeline.things) {
-    const profile = profiles.get(thing.of)
-    const line = budget.find((b) => b.of === thing.of)
-    const byRuns = profile !== undefined && profile.runs >= LEAST_RUNS ? profile.riseMa : null
-    const bySwitching = line !== undefined && isSure(line) && line.switchings >= 2 ? line.ma : null
-    if (byRuns !== null || bySwitching !== null) {
-      liftShare.set(thing.of, Math.max(byRuns ?? 0, bySwitching ?? 0) / tripMa)
-    }
+  const room = roomOf(headroom)
+  const lifts = new Map<string, Lift>()
+  for (const { of, kind } of timeline.things) {
+    if (kind !== 'load') continue
+    const profile = profiles.get(of)
+    const line = budget.find((b) => b.of === of)
+    const sure = line?.basis === 'switching' && (line.low ?? 0) > 0 ? (line.ma ?? 0) : 0
+    if ((profile === undefined || profile.riseMa === null) && sure === 0) continue
+    const usualMa = profile?.riseMa ?? sure
+    // of one or two runs the tenth largest is no figure: the usual one stands for it
+    const top = profile !== undefined && profile.runs >= LEAST_RUNS ? profile.buckets : []
+    const topMa = top.reduce((most, bucket) => Math.max(most, bucket.p90Ma), Math.max(usualMa, sure))
+    lifts.set(of, { usualMa, topMa, reach: topMa / room })
   }
   if (timeline.leakage === null || timeline.leakage.t.length < 100) {
     return {
       minutes: null,
       tripMa,
       usualShare: null,
-      liftShare,
+      lifts,
       unexplained: null,
       schedule: { kind: 'none' },
       timed: [],
@@ -71,13 +84,15 @@ export function logView(
   const found = minutes.t.length < 60 ? null : unexplained(timeline, minutes, budget, tripMa)
   // what comes with one named thing alone is that thing's lift, though the budget's steps do not show it
   if (found !== null && found.follows !== null && found.apart >= LEAST_RUNS) {
-    liftShare.set(found.follows, Math.max(liftShare.get(found.follows) ?? 0, found.heightMa / tripMa))
+    const seen = lifts.get(found.follows)
+    const topMa = Math.max(seen?.topMa ?? 0, found.heightMa)
+    lifts.set(found.follows, { usualMa: seen?.usualMa ?? found.heightMa, topMa, reach: topMa / room })
   }
   return {
     minutes,
     tripMa,
     usualShare: minutes.t.length === 0 ? null : quantile(thinned(minutes.v, 5_000), 0.5) / tripMa,
-    liftShare,
+    lifts,
     unexplained: found,
     schedule: found === null || found.follows !== null ? { kind: 'none' } : scheduleOf(timeline, found),
     timed: found === null ? [] : timedClusters(timeline, found.remainder),

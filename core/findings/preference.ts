@@ -34,14 +34,14 @@ export function preferences(
     let inside = 0
     for (const share of window.inside) inside += share
     const count = Math.min(trips, Math.floor(inside + 1e-9))
-    const outside = Math.max(1e-9, hours - window.hours)
-    const test = poissonRateRatio([count, trips - count], [window.hours, outside], { confidence: 0.9 })
+    const outside = Math.max(1e-9, hours - window.insideHours)
+    const test = poissonRateRatio([count, trips - count], [window.insideHours, outside], { confidence: 0.9 })
     return {
       of,
       window,
       inside,
       trips,
-      expected: (trips * window.hours) / hours,
+      expected: (trips * window.insideHours) / hours,
       ratio: test.ratio,
       low: test.low,
       high: test.high,

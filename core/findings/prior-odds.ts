@@ -1,7 +1,7 @@
 import type { Headroom } from '../contract/findings.ts'
 import { intersect, totalMs } from '../timeline/spans.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
-import type { LogView } from './log-view.ts'
+import type { Lift, LogView } from './log-view.ts'
 import { heldAbove } from './windows/held.ts'
 import { HOUR_MS } from './windows/trip-share.ts'
 import type { Drying } from './windows/weather-windows.ts'
@@ -26,15 +26,25 @@ export const ODDS = {
 const LOADS_ASSUMED = 1
 
 /**
- * A run that lifts the leakage by more than this is faulty by itself: 1.5 times what IEC 60335-1 clause 13.2 allows a
- * stationary appliance of class I (3.5 mA; from memory).
+ * Excursions higher than this are no sound appliance's: 1.5 times what IEC 60335-1 clause 13.2 allows a stationary one of
+ * class I (3.5 mA; from memory).
  */
 const ABNORMAL_MA = 5.25
 const ABNORMAL_SHARE = 0.2
-/** A lift that can fire trips by itself, as a share of the trip current. */
-const LARGE_LIFT = 0.12
-/** How much likelier a cause a thing is that was seen to leak so much. */
+/** How much likelier a cause an unlisted thing is that was seen to leak so much. */
 export const ABNORMAL = 12
+
+/**
+ * Runs that in one of ten cases use up so much of the usual headroom, by more than a sound appliance leaks, and how much
+ * likelier a cause that makes a thing. A fault that never shows in the log, because it lasts seconds or fires at once every
+ * time, keeps the rest from falling further. Judgement, tuned on simulated sites.
+ */
+const REACH = [
+  [0.6, 40],
+  [0.45, 2],
+  [0.3, 0.6],
+  [0, 0.35],
+] as const
 
 /** Usual level this near the trip current: many together. */
 export const NEAR = 0.75
@@ -53,20 +63,17 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
     const silent = loads.length === 0 ? LOADS_ASSUMED : loads.filter((t) => !isJudged(t.of)).length
     odds += silent * ODDS.load
   }
-  const lift = log.liftShare.get(thing.of)
+  const lift = log.lifts.get(thing.of)
   // where the usual level is near the trip current anyway, what a sound appliance leaks is the last step, not the cause
   const near = log.usualShare !== null && log.usualShare >= NEAR
-  const small = near && lift !== undefined && lift * log.tripMa < SOUND_MA ? 0.02 : 1
-  return odds * liftFactor(lift, log.tripMa) * small * (log.followsCurrent === true ? 0.02 : 1)
+  const small = near && lift !== undefined && lift.topMa < SOUND_MA ? 0.02 : 1
+  return odds * liftFactor(lift) * small * (log.followsCurrent === true ? 0.02 : 1)
 }
 
-function liftFactor(share: number | undefined, tripMa: number): number {
-  if (share === undefined) return 1
-  if (share >= ABNORMAL_SHARE && share * tripMa >= ABNORMAL_MA) return ABNORMAL
-  if (share >= 0.2) return 3
-  if (share >= 0.12) return 1.5
-  if (share >= 0.06) return 0.6
-  return 0.3
+function liftFactor(lift: Lift | undefined): number {
+  if (lift === undefined) return 1
+  const reach = lift.topMa >= SOUND_MA ? lift.reach : Math.min(lift.reach, 0.5)
+  return REACH.find(([least]) => reach >= least)?.[1] ?? 1
 }
 
 /** Whether the excursions that no named load accounts for are higher than any sound appliance leaks. */
@@ -77,7 +84,7 @@ export function isAbnormal(log: LogView): boolean {
 
 /** How far the odds of a listed thing without a large lift fall where an unlisted one leaks heavily. */
 export function innocence(log: LogView, of: string): number {
-  return isAbnormal(log) && (log.liftShare.get(of) ?? 0) < LARGE_LIFT ? 0.3 : 1
+  return isAbnormal(log) && (log.lifts.get(of)?.reach ?? 0) < REACH[1][0] ? 0.3 : 1
 }
 
 /** Many together: likely only where the usual level stands near the trip current. */

@@ -49,7 +49,7 @@ function preferenceReason(p: Preference, grade: Grade, leader: string | null): R
       tripsInside: rounded(p.inside),
       trips: p.trips,
       expectedInside: rounded(p.expected),
-      hoursInside: rounded(p.window.hours),
+      hoursInside: rounded(p.window.insideHours),
       rateRatio: p.ratio !== null && Number.isFinite(p.ratio) ? rounded(p.ratio) : null,
       ratioLow: rounded(p.low),
       ratioHigh: Number.isFinite(p.high) ? rounded(p.high) : null,

@@ -11,6 +11,7 @@ import { type Preference, preferences } from './preference.ts'
 import { ODDS } from './prior-odds.ts'
 import { notedReason, reasonsOf } from './reasons.ts'
 import { clockText } from './windows/clock-windows.ts'
+import { habitsOf } from './windows/habits.ts'
 import { type Frame, HOUR_MS } from './windows/trip-share.ts'
 import { nameOf, rounded, sentence } from './words.ts'
 
@@ -32,12 +33,12 @@ export interface Weighed {
 export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const hours = totalMs(timeline.energised) / HOUR_MS
   const kept = episodes(timeline.trips)
-  const frame: Frame = { timeline, hours, trips: kept }
+  const frame: Frame = { timeline, hours, trips: kept, habits: habitsOf(timeline, kept) }
   const log = logView(timeline, measured.budget, measured.profiles, measured.headroom)
   const courses = kept.map((trip) => measured.trips[timeline.trips.indexOf(trip)]?.course ?? 'unseen')
   const candidates = kept.length === 0 || hours <= 0 ? [] : candidatesOf(frame, courses, measured, log)
   const weighed: LineUp =
-    candidates.length === 0 ? { standings: [], none: 1, unexplained: 1 } : lineUp(hours, kept.length, candidates)
+    candidates.length === 0 ? { standings: [], none: 1, unexplained: 1 } : lineUp(hours, kept.length, candidates, frame.habits)
   const tested = weighed.standings.flatMap((s) => {
     const top = s.windows[0]
     return top === undefined ? [] : [{ of: s.of, window: top.window }]
@@ -98,7 +99,7 @@ function judgedSuspect(
  * no contrast, and can never be cleared by when trips came.
  */
 function hasContrast(frame: Frame, standing: Standing): boolean {
-  return standing.windows.some(({ window }) => window.hours < 0.98 * frame.hours)
+  return standing.windows.some(({ window }) => window.insideHours < 0.98 * frame.hours)
 }
 
 function gradeOf(probability: number, contrast: boolean): Grade {
@@ -118,7 +119,7 @@ function sameExposure(frame: Frame, standing: Standing, all: readonly Standing[]
     .filter(({ windows }) => {
       const theirs = windows[0]?.window
       if (theirs === undefined) return false
-      const hours = Math.abs(theirs.hours - mine.hours) <= 0.05 * Math.max(theirs.hours, mine.hours)
+      const hours = Math.abs(theirs.insideHours - mine.insideHours) <= 0.05 * Math.max(theirs.insideHours, mine.insideHours)
       return hours && frame.trips.every((_, i) => Math.abs(theirs.inside[i]! - mine.inside[i]!) < 0.05)
     })
     .map((other) => other.of)

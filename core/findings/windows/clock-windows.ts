@@ -25,6 +25,7 @@ interface DayProfile {
 export function clockWindows(frame: Frame): ExposureWindow[] {
   const profile = dayProfile(frame)
   const hours = running(profile.hours)
+  const lively = frame.habits.map((habit) => running(profile.hours.map((h, minute) => h * habit.at(minute))))
   const trips = profile.trips.map(running)
   const windows: ExposureWindow[] = []
   for (const width of WIDTHS) {
@@ -39,9 +40,10 @@ export function clockWindows(frame: Frame): ExposureWindow[] {
         key: `${clockText(start)}+${width}`,
         words: `between ${clockText(start)} and ${clockText(start + width)}`,
         prior: 1 / (WIDTHS.length * count),
-        hours: exposed,
+        hoursBy: lively.map((sums) => between(sums, start, start + width)),
+        insideHours: exposed,
         inside,
-        weights: inside,
+        weightsBy: frame.habits.map(() => inside),
       })
     }
   }
@@ -81,9 +83,10 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
             key: `${hours.toFixed(3)}h@${start.toFixed(2)}+${width}${c === 1 ? ' under supply' : ''}`,
             words: `in the same ${Math.round(width * 100)} % of a period of ${hours.toFixed(1)} h${c === 1 ? ' under supply' : ''}`,
             prior: 1 / (clocks.length * PHASE_WIDTHS.length * (steps + 1) * phases),
-            hours: frame.hours * width,
+            hoursBy: frame.habits.map(() => frame.hours * width),
+            insideHours: frame.hours * width,
             inside,
-            weights: inside,
+            weightsBy: frame.habits.map(() => inside),
           })
         }
       }

@@ -53,8 +53,8 @@ function isOneThings(timeline: Timeline, log: LogView, wet: Spans | null, inside
   }
   if (wet !== null && isMostly(wet)) return true
   return timeline.things.some((thing) => {
-    const lift = log.liftShare.get(thing.of) ?? 0
-    if (lift < LARGE_SHARE || lift * log.tripMa < SOUND_MA) return false
+    const topMa = log.lifts.get(thing.of)?.topMa ?? 0
+    if (topMa < LARGE_SHARE * log.tripMa || topMa < SOUND_MA) return false
     return isMostly(thing.state.on)
   })
 }

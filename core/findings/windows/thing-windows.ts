@@ -1,28 +1,33 @@
 import { afterEdges, knownOf } from '../../timeline/exposure.ts'
 import { intersect, type Spans, subtract } from '../../timeline/spans.ts'
-import type { Thing } from '../../timeline/timeline.ts'
 import type { ExposureWindow } from '../line-up.ts'
-import { type Frame, MINUTE_MS, normalised, windowOf } from './trip-share.ts'
+import type { HeldThing } from './held-to-trips.ts'
+import { type Frame, type Layer, layeredWindow, MINUTE_MS, normalised } from './trip-share.ts'
 
-/** Minutes after switching that are tried, with their share of the suspect's prior. */
+/** Minutes after switching on that are tried alone, with their share of the suspect's prior. */
 const AFTER_ON = [
-  [1, 0.08],
-  [3, 0.12],
-  [10, 0.15],
-  [30, 0.1],
+  [1, 0.18],
+  [3, 0.08],
+  [10, 0.08],
+  [30, 0.03],
 ] as const
+/** The same as the likelier part of a whole run, and how many times likelier: a fault may fire at once or later in the run. */
+const MOSTLY_AFTER_ON = [1, 3, 10] as const
+const TIMES = [8, 50] as const
+const MOSTLY = 0.04
 const AFTER_OFF = [[10, 0.04]] as const
 const LATE = [
-  [10, 0.06],
-  [60, 0.04],
+  [10, 0.05],
+  [60, 0.03],
 ] as const
-const WHILE_ON = 0.41
+const WHILE_ON = 0.24
 
 /**
- * The ways in which a circuit or load may fire trips: while it is on, within minutes of its start or its end, or
- * only once it has run for a while (domain.md, mechanisms). Empty when its state never changed while it was known.
+ * The ways in which a circuit or load may fire trips: while it is on, within minutes of its start or its end, mostly
+ * then, or only once it has run for a while (domain.md, mechanisms). Empty when its state never changed while it was
+ * known.
  */
-export function thingWindows(frame: Frame, thing: Thing): ExposureWindow[] {
+export function thingWindows(frame: Frame, { thing, blind }: HeldThing): ExposureWindow[] {
   const { on, off } = thing.state
   const known = knownOf(thing.state)
   const { from, to } = frame.timeline
@@ -33,28 +38,35 @@ export function thingWindows(frame: Frame, thing: Thing): ExposureWindow[] {
       to,
       minutes * MINUTE_MS,
     ).on
-  const name = thing.kind === 'circuit' ? 'switched on' : 'its start'
+  const isCircuit = thing.kind === 'circuit'
   const plural = (minutes: number): string => (minutes === 1 ? 'a minute' : `${minutes} minutes`)
-  const windows: (ExposureWindow | null)[] = [
-    windowOf(frame, 'on', thing.kind === 'circuit' ? 'while it was on' : 'while it ran', WHILE_ON, on, known),
-  ]
+  const ofStart = (minutes: number): string => `within ${plural(minutes)} of ${isCircuit ? 'being switched on' : 'its start'}`
+  const whileOn = isCircuit ? 'while it was on' : 'while it ran'
+  const run: Layer = { inside: on, weight: 1, fromStart: true }
+  const windows: (ExposureWindow | null)[] = [layeredWindow(frame, 'on', whileOn, WHILE_ON, [run], known, blind)]
   if (thing.changes.some((c) => c.on)) {
+    const started = new Map(AFTER_ON.map(([minutes]) => [minutes as number, intersect(after(true, minutes), on)]))
     for (const [minutes, prior] of AFTER_ON) {
-      const inside = intersect(after(true, minutes), on)
-      const words =
-        thing.kind === 'circuit' ? `within ${plural(minutes)} of being ${name}` : `within ${plural(minutes)} of ${name}`
-      windows.push(windowOf(frame, `after-on-${minutes}`, words, prior, inside, known))
+      const layer: Layer = { inside: started.get(minutes)!, weight: 1, fromStart: true }
+      windows.push(layeredWindow(frame, `after-on-${minutes}`, ofStart(minutes), prior, [layer], known, blind))
+    }
+    for (const minutes of MOSTLY_AFTER_ON) {
+      for (const times of TIMES) {
+        const first: Layer = { inside: started.get(minutes)!, weight: times - 1, fromStart: true }
+        const words = `${whileOn}, the likelier the sooner after ${isCircuit ? 'being switched on' : 'its start'}`
+        windows.push(layeredWindow(frame, `on-${times}x${minutes}`, words, MOSTLY, [run, first], known, blind))
+      }
     }
     for (const [minutes, prior] of LATE) {
       const inside = subtract(on, after(true, minutes))
-      windows.push(
-        windowOf(frame, `late-${minutes}`, `when it had run for more than ${plural(minutes)}`, prior, inside, known),
-      )
+      const words = `when it had run for more than ${plural(minutes)}`
+      windows.push(layeredWindow(frame, `late-${minutes}`, words, prior, [{ inside, weight: 1 }], known))
     }
   }
   for (const [minutes, prior] of AFTER_OFF) {
     const inside = intersect(after(false, minutes), off)
-    windows.push(windowOf(frame, `after-off-${minutes}`, `within ${plural(minutes)} of its end`, prior, inside, known))
+    const words = `within ${plural(minutes)} of its end`
+    windows.push(layeredWindow(frame, `after-off-${minutes}`, words, prior, [{ inside, weight: 1 }], known))
   }
   return normalised(windows)
 }

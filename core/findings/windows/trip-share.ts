@@ -1,6 +1,7 @@
-import { contains, intersect, measureWithin, type Spans, totalMs } from '../../timeline/spans.ts'
+import { contains, intersect, measureWithin, NO_SPANS, type Spans, totalMs } from '../../timeline/spans.ts'
 import type { Timeline } from '../../timeline/timeline.ts'
 import type { ExposureWindow } from '../line-up.ts'
+import type { Habit } from './habits.ts'
 
 export const HOUR_MS = 3_600_000
 export const MINUTE_MS = 60_000
@@ -12,6 +13,24 @@ export interface Frame {
   readonly hours: number
   /** The trips that count: repeats soon after a reset are one episode. Each as [from, to], ms. */
   readonly trips: readonly { readonly from: number; readonly to: number }[]
+  /** How lively the site is over the day: every exposure is measured under each of them. */
+  readonly habits: readonly Habit[]
+}
+
+/** One part of an exposure, and how much more likely a trip is in it. */
+export interface Layer {
+  readonly inside: Spans
+  readonly weight: number
+  /** Whether it holds the beginning of a run, which a state logger may not have read before a trip cut it short. */
+  readonly fromStart?: boolean
+}
+
+/** Where a state logger that reads seldom is blind. */
+export interface Blind {
+  /** By trip: 1 where the thing was off when last read, and may have started since. */
+  readonly unread: Uint8Array
+  /** The time after each start that such a logger may not see. */
+  readonly fresh: Spans
 }
 
 /**
@@ -42,20 +61,58 @@ export function windowOf(
   inside: Spans,
   known: Spans,
 ): ExposureWindow | null {
+  return layeredWindow(frame, key, words, prior, [{ inside, weight: 1 }], known)
+}
+
+/**
+ * A window whose exposure is no plain yes or no: the sum of its layers, each a set of time with a weight, the first of
+ * them the whole of it and what is spoken of. A cause acts in proportion to that sum. As `windowOf` otherwise.
+ */
+export function layeredWindow(
+  frame: Frame,
+  key: string,
+  words: string,
+  prior: number,
+  layers: readonly Layer[],
+  known: Spans,
+  blind: Blind | null = null,
+): ExposureWindow | null {
+  const { habits, hours, trips } = frame
   const { energised } = frame.timeline
-  const held = intersect(inside, energised)
   const knownHere = intersect(known, energised)
-  const heldMs = totalMs(held)
   const knownMs = totalMs(knownHere)
+  const held = layers.map(({ inside }) => intersect(inside, knownHere))
+  const heldMs = totalMs(held[0] ?? NO_SPANS)
   if (heldMs < 3 * MINUTE_MS || knownMs - heldMs < 3 * MINUTE_MS) return null
-  const fraction = heldMs / knownMs
-  const shares = new Float64Array(frame.trips.length)
-  frame.trips.forEach((trip, i) => {
-    const share = shareOfTrip(held, energised, trip)
-    const unknown = 1 - shareOfTrip(knownHere, energised, trip)
-    shares[i] = Math.min(1, share + unknown * fraction)
+  const shares = held.map((spans) => trips.map((trip) => shareOfTrip(spans, energised, trip)))
+  const unknown = trips.map((trip) => 1 - shareOfTrip(knownHere, energised, trip))
+  const fresh = blind === null ? NO_SPANS : intersect(blind.fresh, knownHere)
+  const isKnown = unknown.every((u) => u === 0) && (blind === null || !blind.unread.includes(1))
+  const hoursBy: number[] = []
+  const weightsBy: Float64Array[] = []
+  let insideHours = 0
+  let inside = new Float64Array(0)
+  habits.forEach((habit, k) => {
+    const all = habit.hoursOf(knownHere)
+    const fractions = held.map((spans) => habit.hoursOf(spans) / all)
+    const started = habit.hoursOf(fresh) / all
+    const shareIn = (l: number, i: number): number => {
+      const unread = layers[l]!.fromStart === true && blind?.unread[i] === 1 ? started : 0
+      return Math.min(1, shares[l]![i]! + unread + unknown[i]! * fractions[l]!)
+    }
+    hoursBy.push(hours * layers.reduce((sum, { weight }, l) => sum + weight * fractions[l]!, 0))
+    if (k === 0) {
+      insideHours = hours * fractions[0]!
+      inside = Float64Array.from(trips, (_, i) => shareIn(0, i))
+    }
+    const before = weightsBy[0]
+    weightsBy.push(
+      isKnown && before !== undefined
+        ? before
+        : Float64Array.from(trips, (_, i) => layers.reduce((sum, { weight }, l) => sum + weight * shareIn(l, i), 0)),
+    )
   })
-  return { key, words, prior, hours: frame.hours * fraction, inside: shares, weights: shares }
+  return { key, words, prior, hoursBy, weightsBy, inside, insideHours }
 }
 
 /** Scales the priors of the windows that exist so that they sum to one. */
@@ -70,5 +127,11 @@ export function normalised(windows: readonly (ExposureWindow | null)[]): Exposur
  * The same windows with each trip's weight multiplied by what the leakage before it says, and their priors by `prior`.
  */
 export function marked(windows: readonly ExposureWindow[], marks: Float64Array, prior: number): ExposureWindow[] {
-  return windows.map((w) => ({ ...w, prior: w.prior * prior, weights: w.inside.map((share, i) => share * marks[i]!) }))
+  return windows.map((w) => {
+    const [first] = w.weightsBy
+    const product = (weights: Float64Array): Float64Array => weights.map((share, i) => share * marks[i]!)
+    const same = w.weightsBy.every((weights) => weights === first)
+    const once = same && first !== undefined ? product(first) : null
+    return { ...w, prior: w.prior * prior, weightsBy: w.weightsBy.map((weights) => once ?? product(weights)) }
+  })
 }
