@@ -1,12 +1,13 @@
 import type { BudgetLine, Headroom, TripFinding } from '../contract/findings.ts'
 import { usualInterval } from '../timeline/series.ts'
-import { spansOf } from '../timeline/spans.ts'
+import { eachSpan, spansOf } from '../timeline/spans.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import type { Candidate, ExposureWindow } from './line-up.ts'
 import type { LogView } from './log-view.ts'
 import { type CauseKind, courseRatio, type Pace } from './marks.ts'
 import {
   ABNORMAL,
+  GUILTY_LOOK,
   innocence,
   isAbnormal,
   loadCurrentOdds,
@@ -14,15 +15,19 @@ import {
   rainOdds,
   standingOdds,
   thingOdds,
+  timedFactor,
   wetTime,
 } from './prior-odds.ts'
 import type { RunProfile } from './run-profiles.ts'
+import { type TimedCluster } from './timed/timed-clusters.ts'
+import { whenWords } from './timed/timed-step.ts'
 import { clockWindows, periodWindows } from './windows/clock-windows.ts'
 import { heldToTrips } from './windows/held-to-trips.ts'
+import { withKicks } from './windows/kicks.ts'
 import { levelWindows } from './windows/level-windows.ts'
 import { sunWindows } from './windows/sun-windows.ts'
 import { thingWindows } from './windows/thing-windows.ts'
-import { type Frame, marked, windowOf } from './windows/trip-share.ts'
+import { type Frame, type Layer, layeredWindow, marked, normalised, windowOf } from './windows/trip-share.ts'
 import { dryings, loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
 
 /** A device that opens too soon is fired by any sound load: how far the odds of all else fall then. */
@@ -30,8 +35,12 @@ const UNDER_A_BAD_DEVICE = 0.001
 /** Odds of a device that a test, or its own trips, showed to open too soon: measured, not guessed. */
 const BAD_DEVICE = 600
 
+/** A load that runs by itself mostly fires as it starts: in its first minutes, so many times likelier. */
+const EARLY_MS = 6 * 60_000
+const EARLY_TIMES = 10
+
 /** Something on no sheet that comes by the clock, a period or the sun is one and the same thing. */
-const TIMERS: ReadonlySet<string> = new Set(['clock', 'period', 'sun', 'unlisted'])
+const TIMERS: ReadonlySet<string> = new Set(['clock', 'period', 'sun'])
 
 /** Times of people and loggers differ by this much. */
 const TOGETHER_MS = 60_000
@@ -71,7 +80,8 @@ export function candidatesOf(
         : [...marked(windows, marks(kind, 'at-once'), 0.5), ...marked(windows, marks(kind, 'visibly'), 0.5)]
     const thing = timeline.things.find((t) => t.of === of)
     const candidate: Candidate = { of, odds, windows: paced }
-    if (TIMERS.has(of)) list.push({ ...candidate, family: 'timer' })
+    if (of === 'device' || of === 'unlisted') list.push({ ...candidate, alone: true })
+    else if (TIMERS.has(of)) list.push({ ...candidate, family: 'timer' })
     else if (thing?.kind === 'load') list.push({ ...candidate, partOf: `circuit:${thing.circuit}` })
     else list.push(candidate)
   }
@@ -83,33 +93,65 @@ export function candidatesOf(
   const rain = rainOdds(timeline, log, laws)
   const wet = wetTime(rain, laws)
   const level = levelWindows(frame, log, wet)
-  const unlisted = unlistedWindows(frame, log, wet !== null)
+  const unlisted = log.timed.some((t) => timedFactor(log, t) >= GUILTY_LOOK)
+    ? []
+    : unlistedWindows(frame, log, wet !== null)
   for (const thing of timeline.things) {
-    const odds = thingOdds(timeline, thing, log, isJudged) * (unlisted.length > 0 ? innocence(log, thing.of) : 1)
+    const odds = thingOdds(timeline, thing, log, isJudged) * innocence(log, thing.of)
     add(thing.of, odds, 'local', byThing.get(thing.of) ?? [])
   }
   add('rain', rain, 'weather', rainWindows(frame, laws))
   add('temperature', ODDS.temperature, 'weather', temperatureWindows(frame))
-  // what comes by a schedule is named by it: the excursions' window goes to the clock or the period
-  const schedule = unlisted.length === 0 ? 'none' : log.schedule.kind
-  const weight = unlisted.length === 0 ? 1 : isAbnormal(log) ? ABNORMAL : 4
-  const clocked = schedule === 'clock' ? weight : 1
-  const periodic = schedule === 'period' ? weight : 1
-  const share = (windows: readonly ExposureWindow[], by: number): ExposureWindow[] =>
-    by > 1 ? [...unlisted, ...scaled(windows, 0.5)] : [...windows]
-  add('clock', ODDS.clock * clocked, 'local', share(clockWindows(frame), clocked))
-  add('period', ODDS.period * periodic, 'local', share(periodWindows(frame), periodic))
-  // steps of the log that keep to the clock do not follow the sun
-  add('sun', ODDS.sun * (schedule === 'clock' ? 0.1 : 1), 'local', sunWindows(frame))
+  for (const kind of ['clock', 'period', 'sun'] as const) {
+    const seen = timedWindows(frame, log, kind)
+    const blind = kind === 'clock' ? clockWindows(frame) : kind === 'period' ? periodWindows(frame) : sunWindows(frame)
+    // what the log shows to keep a schedule is likelier than what only trips would show
+    const weight = seen.factor === null ? 0 : seen.factor
+    const all = [...scaled(seen.windows, weight / (1 + weight)), ...scaled(blind, 1 / (1 + weight))]
+    add(kind, ODDS[kind] * (1 + weight), 'local', all)
+  }
   add('load-current', loadCurrentOdds(log), 'local', loadCurrentWindows(frame))
   if (tooSensitive) add('device', BAD_DEVICE, 'local', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
-  else add('standing', standingOdds(log, measured.headroom), 'local', level)
+  else {
+    add('standing', standingOdds(log, measured.headroom), 'local', level)
+    if (mayBeTooSensitive(timeline, measured)) add('device', ODDS.device, 'local', level)
+  }
   add('supply', ODDS.supply, 'supply', supplyWindows(frame))
-  add('unlisted', ODDS.unlisted * (schedule === 'none' ? weight : 1), 'local', [
+  const irregular = unlisted.length === 0 ? 1 : isAbnormal(log) ? ABNORMAL : 4
+  add('unlisted', ODDS.unlisted * irregular, 'local', [
     ...unlisted,
     ...always(frame, 'at any time', unlisted.length > 0 ? 0.5 : 1),
   ])
   return list
+}
+
+/** Whether a schedule that the log shows may be of this kind: one that clock and sun explain alike is of both. */
+function isOfKind({ schedule }: TimedCluster, kind: 'clock' | 'period' | 'sun'): boolean {
+  return schedule.kind === kind || (kind === 'sun' && schedule.kind === 'clock' && schedule.sunMoved !== undefined)
+}
+
+/** When unnamed loads with such a schedule were due, and how suspicious the heaviest of them is; null without any. */
+function timedWindows(
+  frame: Frame,
+  log: LogView,
+  kind: 'clock' | 'period' | 'sun',
+): { windows: ExposureWindow[]; factor: number | null } {
+  const all = spansOf([[frame.timeline.from, frame.timeline.to]])
+  const found = log.timed.filter((cluster) => isOfKind(cluster, kind))
+  let factor: number | null = null
+  const windows = found.flatMap((cluster, i): (ExposureWindow | null)[] => {
+    const weight = timedFactor(log, cluster)
+    factor = Math.max(factor ?? 0, weight)
+    const words = `while an unnamed load was due (${whenWords(cluster.schedule)})`
+    const starts = spansOf([...eachSpan(cluster.due)].map(({ from, to }) => [from, Math.min(to, from + EARLY_MS)] as const))
+    const run: Layer = { inside: cluster.due, weight: 1 }
+    const first: Layer = { inside: starts, weight: EARLY_TIMES - 1 }
+    return [
+      layeredWindow(frame, `due-${i}`, words, 0.5 * weight, [run], all),
+      layeredWindow(frame, `due-early-${i}`, words, 0.5 * weight, [run, first], all),
+    ]
+  })
+  return { windows: normalised(windows), factor }
 }
 
 function always(frame: Frame, words: string, prior: number): ExposureWindow[] {
@@ -142,8 +184,13 @@ function unlistedWindows(frame: Frame, log: LogView, rainLifts: boolean): Exposu
   if (unexplained === null || unexplained.apart < 3 || unexplained.follows !== null || rainLifts) return []
   const all = spansOf([[frame.timeline.from, frame.timeline.to]])
   const words = 'while the leakage stood far above what the listed loads explain'
-  const window = windowOf(frame, 'unexplained', words, 0.5, unexplained.excursions, all)
-  return window === null ? [] : [window]
+  return withKicks(frame, 'unexplained', words, 0.5, [{ inside: unexplained.excursions, weight: 1 }], all)
+}
+
+/** Nobody has tested it, and the leakage never came near half its rating: only the level at its trips can tell. */
+function mayBeTooSensitive(timeline: Timeline, { headroom }: Measured): boolean {
+  const max = headroom.standingMa?.max
+  return headroom.tripMa.basis !== 'ramp-tests' && max !== undefined && max < 0.9 * 0.5 * timeline.rcd.ratedMa
 }
 
 /**

@@ -31,6 +31,8 @@ export interface Candidate {
   /** Prior odds of being a cause. */
   readonly odds: number
   readonly windows: readonly ExposureWindow[]
+  /** It explains all trips or none: never in a set with another. */
+  readonly alone?: boolean
   /** Suspects of one family are the same thing under several names: never two of them in one set. */
   readonly family?: string
   /** The suspect that this one is part of (a load of its circuit): never both in one set. */
@@ -158,6 +160,7 @@ export function lineUp(
 }
 
 function areOneThing(a: Candidate, b: Candidate): boolean {
+  if (a.alone === true || b.alone === true) return true
   return (a.family !== undefined && a.family === b.family) || a.partOf === b.of || b.partOf === a.of
 }
 

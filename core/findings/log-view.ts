@@ -1,13 +1,14 @@
 import type { BudgetLine, Headroom } from '../contract/findings.ts'
+import { median } from '../statistics/median.ts'
 import { quantile } from '../statistics/quantile.ts'
 import type { Series } from '../timeline/series.ts'
 import { joinSeries, sliceSeries } from '../timeline/series.ts'
+import { NO_SPANS, type Spans, union } from '../timeline/spans.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import { followsCurrent } from './follows-current.ts'
 import { minuteLevels } from './minute-levels.ts'
 import type { RunProfile } from './run-profiles.ts'
 import { type TimedCluster, timedClusters } from './timed/timed-clusters.ts'
-import { type Schedule, scheduleOf } from './timed-steps.ts'
 import { type Unexplained, unexplained } from './unexplained.ts'
 import { thinned } from './windows/held.ts'
 
@@ -16,8 +17,12 @@ export interface Lift {
   /** What a run usually and in one of ten cases adds at its height, mA. */
   readonly usualMa: number
   readonly topMa: number
-  /** The latter over the usual headroom: from about two thirds on such runs fire trips. */
-  readonly reach: number
+  /**
+   * The same over the usual headroom, less what happens at the starts of most other things too (a leak that belongs to
+   * none of them raises all): near one such runs fire trips.
+   */
+  readonly usual: number
+  readonly top: number
 }
 
 /** What the leakage log says that bears on every suspect; computed once. Nulls without a log. */
@@ -25,13 +30,15 @@ export interface LogView {
   /** Minute means of energised time. */
   readonly minutes: Series | null
   readonly tripMa: number
+  /** Usual headroom, mA. */
+  readonly roomMa: number
   /** Median standing leakage over the trip current. */
   readonly usualShare: number | null
   /** By thing: what its runs do to the level; only where the log could see it. */
   readonly lifts: ReadonlyMap<string, Lift>
+  /** Time in which one load alone leaks more than a sound one. */
+  readonly outsized: Spans
   readonly unexplained: Unexplained | null
-  /** When the excursions that no named load accounts for come. */
-  readonly schedule: Schedule
   /** Loads that nobody named and that keep a schedule, highest first; empty without a log. */
   readonly timed: readonly TimedCluster[]
   /** Whether leakage follows the group's load current whichever load carries it. */
@@ -40,6 +47,25 @@ export interface LogView {
 
 /** Runs or switchings that a lift must rest on. */
 const LEAST_RUNS = 3
+/** Things that must be seen before what is common to most of them can be told. */
+const LEAST_LIFTS = 4
+
+function liftOf(usualMa: number, topMa: number, roomMa: number): Lift {
+  return { usualMa, topMa, usual: usualMa / roomMa, top: topMa / roomMa }
+}
+
+/** The lifts with what is common to most of them taken off; as they are where there are too few to tell. */
+function beyondCommon(lifts: ReadonlyMap<string, Lift>): Map<string, Lift> {
+  if (lifts.size < LEAST_LIFTS) return new Map(lifts)
+  const usual = median([...lifts.values()].map((lift) => lift.usual))
+  const top = median([...lifts.values()].map((lift) => lift.top))
+  return new Map(
+    [...lifts].map(([of, lift]) => [
+      of,
+      { ...lift, usual: Math.max(0, lift.usual - usual), top: Math.max(0, lift.top - top) },
+    ]),
+  )
+}
 
 /** What is usually left below the trip current, mA; where the usual level stands at or above it, a tenth of it. */
 function roomOf({ tripMa, standingMa }: Headroom): number {
@@ -54,7 +80,7 @@ export function logView(
   headroom: Headroom,
 ): LogView {
   const tripMa = headroom.tripMa.value
-  const room = roomOf(headroom)
+  const roomMa = roomOf(headroom)
   const lifts = new Map<string, Lift>()
   for (const { of, kind } of timeline.things) {
     if (kind !== 'load') continue
@@ -66,16 +92,17 @@ export function logView(
     // of one or two runs the tenth largest is no figure: the usual one stands for it
     const top = profile !== undefined && profile.runs >= LEAST_RUNS ? profile.buckets : []
     const topMa = top.reduce((most, bucket) => Math.max(most, bucket.p90Ma), Math.max(usualMa, sure))
-    lifts.set(of, { usualMa, topMa, reach: topMa / room })
+    lifts.set(of, liftOf(usualMa, topMa, roomMa))
   }
   if (timeline.leakage === null || timeline.leakage.t.length < 100) {
     return {
       minutes: null,
       tripMa,
+      roomMa,
       usualShare: null,
-      lifts,
+      lifts: beyondCommon(lifts),
+      outsized: NO_SPANS,
       unexplained: null,
-      schedule: { kind: 'none' },
       timed: [],
       followsCurrent: null,
     }
@@ -86,18 +113,24 @@ export function logView(
   if (found !== null && found.follows !== null && found.apart >= LEAST_RUNS) {
     const seen = lifts.get(found.follows)
     const topMa = Math.max(seen?.topMa ?? 0, found.heightMa)
-    lifts.set(found.follows, { usualMa: seen?.usualMa ?? found.heightMa, topMa, reach: topMa / room })
+    lifts.set(found.follows, liftOf(Math.max(seen?.usualMa ?? 0, found.heightMa), topMa, roomMa))
   }
   return {
     minutes,
     tripMa,
+    roomMa,
     usualShare: minutes.t.length === 0 ? null : quantile(thinned(minutes.v, 5_000), 0.5) / tripMa,
-    lifts,
+    lifts: beyondCommon(lifts),
+    outsized: outsizedOf(timeline, profiles),
     unexplained: found,
-    schedule: found === null || found.follows !== null ? { kind: 'none' } : scheduleOf(timeline, found),
     timed: found === null ? [] : timedClusters(timeline, found.remainder),
-    followsCurrent: followsCurrent(timeline, minutes, budget),
+    followsCurrent: followsCurrent(timeline, minutes),
   }
+}
+
+function outsizedOf(timeline: Timeline, profiles: ReadonlyMap<string, RunProfile>): Spans {
+  const loads = timeline.things.filter((t) => t.kind === 'load').map((t) => profiles.get(t.of)?.outsized ?? NO_SPANS)
+  return loads.reduce(union, NO_SPANS)
 }
 
 function energisedMinutes(timeline: Timeline, leakage: Series): Series {

@@ -2,6 +2,8 @@ import type { Headroom } from '../contract/findings.ts'
 import { intersect, totalMs } from '../timeline/spans.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
 import type { Lift, LogView } from './log-view.ts'
+import { OUTSIZED_MA } from './run-profiles.ts'
+import type { TimedCluster } from './timed/timed-clusters.ts'
 import { heldAbove } from './windows/held.ts'
 import { HOUR_MS } from './windows/trip-share.ts'
 import type { Drying } from './windows/weather-windows.ts'
@@ -35,21 +37,22 @@ const ABNORMAL_SHARE = 0.2
 export const ABNORMAL = 12
 
 /**
- * Runs that in one of ten cases use up so much of the usual headroom, by more than a sound appliance leaks, and how much
- * likelier a cause that makes a thing. A fault that never shows in the log, because it lasts seconds or fires at once every
- * time, keeps the rest from falling further. Judgement, tuned on simulated sites.
+ * How much likelier a cause it makes a thing that its runs use up so much of the usual headroom, usually and in one of ten
+ * cases, by more than a sound appliance leaks. A fault that never shows in the log, because it lasts seconds or fires
+ * at once every time, keeps the rest from falling further. Judgement, tuned on simulated sites.
  */
-const REACH = [
-  [0.6, 40],
-  [0.45, 2],
-  [0.3, 0.6],
-  [0, 0.35],
-] as const
+const REACH: readonly { readonly usual: number; readonly top: number; readonly factor: number }[] = [
+  { usual: 0.33, top: 0.33, factor: 40 },
+  { usual: 0.18, top: 0.4, factor: 20 },
+  { usual: 0.15, top: 0.25, factor: 1.5 },
+  { usual: 0.05, top: 0.15, factor: 0.6 },
+]
+const NO_REACH = 0.35
+/** From this factor on a thing is suspicious by its leakage alone. */
+export const GUILTY_LOOK = 20
 
 /** Usual level this near the trip current: many together. */
 export const NEAR = 0.75
-/** What a sound appliance leaks at most, with some room: 3.5 mA of IEC 60335-1 clause 13.2 (from memory). */
-export const SOUND_MA = 4
 
 /**
  * Odds of a circuit or load. A circuit stands in for those of its loads that nothing can be said about. The log then
@@ -66,14 +69,21 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
   const lift = log.lifts.get(thing.of)
   // where the usual level is near the trip current anyway, what a sound appliance leaks is the last step, not the cause
   const near = log.usualShare !== null && log.usualShare >= NEAR
-  const small = near && lift !== undefined && lift.topMa < SOUND_MA ? 0.02 : 1
+  const small = near && lift !== undefined && lift.topMa < OUTSIZED_MA ? 0.02 : 1
   return odds * liftFactor(lift) * small * (log.followsCurrent === true ? 0.02 : 1)
 }
 
 function liftFactor(lift: Lift | undefined): number {
   if (lift === undefined) return 1
-  const reach = lift.topMa >= SOUND_MA ? lift.reach : Math.min(lift.reach, 0.5)
-  return REACH.find(([least]) => reach >= least)?.[1] ?? 1
+  const found = REACH.find(({ usual, top }) => lift.usual >= usual && lift.top >= top)
+  const factor = found?.factor ?? NO_REACH
+  return lift.topMa < OUTSIZED_MA ? Math.min(1, factor) : factor
+}
+
+/** The same for a load that nobody named and that keeps a schedule: its height is that of every run. */
+export function timedFactor(log: LogView, { heightMa }: TimedCluster): number {
+  const reach = heightMa / log.roomMa
+  return liftFactor({ usualMa: heightMa, topMa: heightMa, usual: reach, top: 1.2 * reach })
 }
 
 /** Whether the excursions that no named load accounts for are higher than any sound appliance leaks. */
@@ -84,7 +94,8 @@ export function isAbnormal(log: LogView): boolean {
 
 /** How far the odds of a listed thing without a large lift fall where an unlisted one leaks heavily. */
 export function innocence(log: LogView, of: string): number {
-  return isAbnormal(log) && (log.lifts.get(of)?.reach ?? 0) < REACH[1][0] ? 0.3 : 1
+  const accused = isAbnormal(log) || log.timed.some((cluster) => timedFactor(log, cluster) >= GUILTY_LOOK)
+  return accused && liftFactor(log.lifts.get(of)) < GUILTY_LOOK ? 0.3 : 1
 }
 
 /** Many together: likely only where the usual level stands near the trip current. */
@@ -100,7 +111,7 @@ export function standingOdds(log: LogView, headroom: Headroom): number {
 export function rainOdds(timeline: Timeline, log: LogView, laws: readonly Drying[]): number {
   const lift = wetLiftShare(timeline, log, laws)
   if (lift === null) return ODDS.rain
-  return ODDS.rain * (lift >= 0.12 ? 5 : lift >= 0.05 ? 1.5 : 0.3)
+  return ODDS.rain * (lift >= 0.12 ? 5 : lift >= 0.05 ? 1.5 : 0.08)
 }
 
 function bestDrying(laws: readonly Drying[]): Drying {

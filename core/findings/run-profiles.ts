@@ -2,7 +2,7 @@ import type { BudgetLine } from '../contract/findings.ts'
 import { quantile } from '../statistics/quantile.ts'
 import { stateAt } from '../timeline/exposure.ts'
 import { usualInterval } from '../timeline/series.ts'
-import { spanAt } from '../timeline/spans.ts'
+import { type Spans, spanAt, spansOf } from '../timeline/spans.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
 import { levelBetween } from './levels.ts'
 
@@ -17,6 +17,8 @@ export const PROFILE_MINUTES: readonly (readonly [number, number])[] = [
 ]
 /** The level before a start is that of so many minutes at most. */
 const BEFORE_MS = 10 * MINUTE_MS
+/** A run that lifts the level by more is no sound appliance's: 3.5 mA of IEC 60335-1 clause 13.2 (from memory), and some room. */
+export const OUTSIZED_MA = 4
 /** The runs that are looked at, the latest ones. */
 const MOST_RUNS = 400
 
@@ -41,6 +43,8 @@ export interface RunProfile {
   readonly riseMa: number | null
   /** Largest rise of a single run's bucket, mA: what it can do on a bad day. */
   readonly largestMa: number | null
+  /** Its runs that lifted the level by more than `OUTSIZED_MA`. */
+  readonly outsized: Spans
   /** Minutes since switching on at which the usual rise is largest (middle of the bucket). */
   readonly peakMinutes: number | null
 }
@@ -62,11 +66,14 @@ export function runProfiles(timeline: Timeline, lines: readonly BudgetLine[] = [
 function profileOf(timeline: Timeline, thing: Thing, index: number, steps: readonly number[]): RunProfile {
   const rises: number[][] = PROFILE_MINUTES.map(() => [])
   let runs = 0
+  const outsized: [number, number][] = []
   const starts = timeline.leakage === null ? [] : thing.changes.filter((change) => change.on).slice(-MOST_RUNS)
   for (const { at } of starts) {
     const seen = runOf(timeline, thing, index, at, steps)
     if (seen === null) continue
     runs++
+    const run = spanAt(thing.state.on, at)
+    if (run !== undefined && seen.some((rise) => rise > OUTSIZED_MA)) outsized.push([at, run.to])
     seen.forEach((rise, b) => {
       if (!Number.isNaN(rise)) rises[b]!.push(rise)
     })
@@ -96,6 +103,7 @@ function profileOf(timeline: Timeline, thing: Thing, index: number, steps: reado
     buckets,
     riseMa: top?.medianMa ?? null,
     largestMa,
+    outsized: spansOf(outsized),
     peakMinutes: top === null ? null : (top.fromMinutes + top.toMinutes) / 2,
   }
 }

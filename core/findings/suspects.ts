@@ -12,6 +12,7 @@ import { ODDS } from './prior-odds.ts'
 import { notedReason, reasonsOf } from './reasons.ts'
 import { clockText } from './windows/clock-windows.ts'
 import { habitsOf } from './windows/habits.ts'
+import { kicksOf } from './windows/kicks.ts'
 import { type Frame, HOUR_MS } from './windows/trip-share.ts'
 import { nameOf, rounded, sentence } from './words.ts'
 
@@ -33,7 +34,7 @@ export interface Weighed {
 export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const hours = totalMs(timeline.energised) / HOUR_MS
   const kept = episodes(timeline.trips)
-  const frame: Frame = { timeline, hours, trips: kept, habits: habitsOf(timeline, kept) }
+  const frame: Frame = { timeline, hours, trips: kept, habits: habitsOf(timeline, kept), kicks: kicksOf(timeline) }
   const log = logView(timeline, measured.budget, measured.profiles, measured.headroom)
   const courses = kept.map((trip) => measured.trips[timeline.trips.indexOf(trip)]?.course ?? 'unseen')
   const candidates = kept.length === 0 || hours <= 0 ? [] : candidatesOf(frame, courses, measured, log)
@@ -83,13 +84,13 @@ function judgedSuspect(
     next: nextFor(timeline, standing.of, grade, same),
   }
   if (same.length > 0) suspect.sameAs = same
-  const { schedule } = log
-  const bySteps = top?.key === 'unexplained'
+  const due = top?.key.startsWith('due-') === true ? log.timed.find((t) => t.schedule.kind === standing.of) : undefined
   if (standing.of === 'clock' && top !== undefined) {
-    suspect.localTime = bySteps && schedule.kind === 'clock' ? clockText(schedule.minute) : top.key.split('+')[0]!
+    suspect.localTime =
+      due?.schedule.kind === 'clock' ? clockText(due.schedule.minutes[0] ?? 0) : (top.key.split('+')[0] ?? '')
   }
   if (standing.of === 'period' && top !== undefined) {
-    suspect.hours = bySteps && schedule.kind === 'period' ? rounded(schedule.hours) : Number.parseFloat(top.key)
+    suspect.hours = due?.schedule.kind === 'period' ? rounded(due.schedule.hours) : Number.parseFloat(top.key)
   }
   return suspect
 }

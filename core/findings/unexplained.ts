@@ -105,11 +105,13 @@ function followed(timeline: Timeline, starts: readonly number[]): string | null 
   return best
 }
 
-/** Excursions that should have begun while a circuit was off, were it not for that circuit, before it is named. */
-const LEAST_MISSED = 3
+/** Excursions that should have begun while a circuit was off, were it not for that circuit, before it is named … */
+const LEAST_MISSED = 4
+/** … and share of them that may have begun all the same, by something else. */
+const STRAY = 0.1
 
 /**
- * The one circuit without which no excursion ever began, though it was off long enough for several: what leaks hangs on
+ * The one circuit without which hardly an excursion began, though it was off long enough for several: what leaks hangs on
  * it. Null when there is none, or more than one.
  */
 function onlyUnder(timeline: Timeline, starts: readonly number[]): string | null {
@@ -117,7 +119,7 @@ function onlyUnder(timeline: Timeline, starts: readonly number[]): string | null
   const found = timeline.things.filter(({ kind, state }) => {
     if (kind !== 'circuit') return false
     const missed = (starts.length * totalMs(state.off)) / all
-    return missed >= LEAST_MISSED && !starts.some((at) => contains(state.off, at))
+    return missed >= LEAST_MISSED && starts.filter((at) => contains(state.off, at)).length <= STRAY * missed
   })
   return found.length === 1 ? found[0]!.of : null
 }

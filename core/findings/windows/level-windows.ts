@@ -1,60 +1,62 @@
 import { quantile } from '../../statistics/quantile.ts'
-import { intersect, type Spans, totalMs } from '../../timeline/spans.ts'
-import type { Timeline } from '../../timeline/timeline.ts'
+import { NO_SPANS, type Spans, subtract, totalMs, union } from '../../timeline/spans.ts'
 import type { ExposureWindow } from '../line-up.ts'
 import type { LogView } from '../log-view.ts'
-import { SOUND_MA } from '../prior-odds.ts'
+import { OUTSIZED_MA } from '../run-profiles.ts'
 import { heldAbove, thinned } from './held.ts'
-import { type Frame, MINUTE_MS, windowOf } from './trip-share.ts'
+import { withKicks } from './kicks.ts'
+import { type Frame, type Layer, MINUTE_MS } from './trip-share.ts'
 
 /** Shares of the time below the level above which headroom counts as used up. */
 const CUTS = [0.5, 0.75, 0.9, 0.97, 0.99] as const
 /** The level is that of some minutes before: the last rise to a trip must not speak for what stood there before. */
 const LATE_MINUTES = [1, 5] as const
-/** High leakage is one thing's doing when that thing, lifting the level by so much of the trip current and more than a sound one, … */
-const LARGE_SHARE = 0.12
-/** … was on in this share of the high time, and far less otherwise. */
-const MOSTLY = 0.8
-/** Or when this share of the high time is an excursion that no named load accounts for. */
-const MOSTLY_UNEXPLAINED = 0.5
+/** Trips come the oftener the higher the level: e times as often with every so large a share of the trip current. */
+const STEEPNESS = [0.03, 0.1] as const
+
+/** High time of which less than this is left when what belongs to single things is taken away is theirs altogether. */
+const LEAST_LEFT = 0.5
 
 /**
- * Hours in which the standing leakage was high, as it stood one or five minutes earlier, and high by many together: what one
- * load, rain (`wet`, where the leakage rises with it) or an unlisted thing brings about is theirs, and such a window is left out. Priors sum to one at most.
+ * Hours in which the standing leakage was high, as it stood one or five minutes earlier, and high by many together: the
+ * time in which one load, rain (`wet`, where the leakage rises with it) or something unlisted alone lifts it far is theirs
+ * and left out. Priors sum to one at most.
  */
 export function levelWindows(frame: Frame, log: LogView, wet: Spans | null): ExposureWindow[] {
-  if (log.minutes === null || log.minutes.t.length < 100) return []
-  const sample = thinned(log.minutes.v, 20_000)
+  const { minutes } = log
+  if (minutes === null || minutes.t.length < 100) return []
+  const sample = thinned(minutes.v, 20_000)
+  const levels = CUTS.map((q) => quantile(sample, q))
+  const others = ofOneThing(log, wet)
   const windows: ExposureWindow[] = []
-  for (const q of CUTS) {
-    const cut = quantile(sample, q)
-    for (const minutes of LATE_MINUTES) {
-      const held = heldAbove(log.minutes, cut, true, minutes * MINUTE_MS)
-      if (isOneThings(frame.timeline, log, wet, held.inside)) continue
-      const words = `while the standing leakage was above ${cut.toFixed(1)} mA`
-      const prior = 1 / (CUTS.length * LATE_MINUTES.length)
-      const window = windowOf(frame, `above-${q}-${minutes}`, words, prior, held.inside, held.known)
-      if (window !== null) windows.push(window)
+  const prior = 1 / (LATE_MINUTES.length * (CUTS.length + STEEPNESS.length))
+  for (const late of LATE_MINUTES) {
+    const held = levels.map((cut) => heldAbove(minutes, cut, true, late * MINUTE_MS))
+    const known = subtract(held[0]!.known, others)
+    const inside = held.map((h) => subtract(h.inside, others))
+    const isTheirs = inside.map((spans, j) => totalMs(spans) < LEAST_LEFT * totalMs(held[j]!.inside))
+    CUTS.forEach((q, j) => {
+      if (isTheirs[j]) return
+      const words = `while the standing leakage was above ${levels[j]!.toFixed(1)} mA`
+      windows.push(...withKicks(frame, `above-${q}-${late}`, words, prior, [{ inside: inside[j]!, weight: 1 }], known))
+    })
+    // where the highest levels are nearly all somebody's, what is left of them is the edges of those excursions
+    if (isTheirs.some((theirs) => theirs)) continue
+    for (const steepness of STEEPNESS) {
+      const weight = (mA: number): number => Math.exp((mA - levels.at(-1)!) / (steepness * log.tripMa))
+      const layers = inside.map((spans, j): Layer => {
+        const below = j === 0 ? 0 : weight(levels[j - 1]!)
+        return { inside: spans, weight: weight(levels[j]!) - below }
+      })
+      const words = 'while the standing leakage was high, the more the higher'
+      windows.push(...withKicks(frame, `higher-${steepness}-${late}`, words, prior, layers, known))
     }
   }
   return windows
 }
 
-function isOneThings(timeline: Timeline, log: LogView, wet: Spans | null, inside: Spans): boolean {
-  const high = intersect(inside, timeline.energised)
-  const hours = totalMs(high)
-  const all = totalMs(timeline.energised)
-  if (hours === 0) return true
-  if (log.unexplained !== null && totalMs(intersect(log.unexplained.excursions, high)) > MOSTLY_UNEXPLAINED * hours)
-    return true
-  const isMostly = (spans: Spans): boolean => {
-    const here = totalMs(intersect(spans, high)) / hours
-    return here >= MOSTLY && totalMs(intersect(spans, timeline.energised)) / all <= 0.6 * here
-  }
-  if (wet !== null && isMostly(wet)) return true
-  return timeline.things.some((thing) => {
-    const topMa = log.lifts.get(thing.of)?.topMa ?? 0
-    if (topMa < LARGE_SHARE * log.tripMa || topMa < SOUND_MA) return false
-    return isMostly(thing.state.on)
-  })
+/** Time in which one thing alone makes the level high. */
+function ofOneThing(log: LogView, wet: Spans | null): Spans {
+  const timed = log.timed.filter(({ heightMa }) => heightMa > OUTSIZED_MA).map(({ spans }) => spans)
+  return [log.outsized, log.unexplained?.excursions ?? NO_SPANS, wet ?? NO_SPANS, ...timed].reduce(union, NO_SPANS)
 }

@@ -15,6 +15,7 @@ const AFTER_ON = [
 const MOSTLY_AFTER_ON = [1, 3, 10] as const
 const TIMES = [8, 50] as const
 const MOSTLY = 0.04
+const KICKED = 0.05
 const AFTER_OFF = [[10, 0.04]] as const
 const LATE = [
   [10, 0.05],
@@ -56,6 +57,12 @@ export function thingWindows(frame: Frame, { thing, blind }: HeldThing): Exposur
         const words = `${whileOn}, the likelier the sooner after ${isCircuit ? 'being switched on' : 'its start'}`
         windows.push(layeredWindow(frame, `on-${times}x${minutes}`, words, MOSTLY, [run, first], known, blind))
       }
+    }
+    // the last step of another thing while this one has used the headroom up
+    for (const times of TIMES) {
+      const kick: Layer = { inside: on, within: frame.kicks, weight: times - 1, fromStart: true }
+      const words = `${whileOn}, mostly as something came on`
+      windows.push(layeredWindow(frame, `on-kick-${times}`, words, KICKED, [run, kick], known, blind))
     }
     for (const [minutes, prior] of LATE) {
       const inside = subtract(on, after(true, minutes))

@@ -15,12 +15,16 @@ export interface Frame {
   readonly trips: readonly { readonly from: number; readonly to: number }[]
   /** How lively the site is over the day: every exposure is measured under each of them. */
   readonly habits: readonly Habit[]
+  /** The minute after every known start of anything. */
+  readonly kicks: Spans
 }
 
 /** One part of an exposure, and how much more likely a trip is in it. */
 export interface Layer {
   readonly inside: Spans
   readonly weight: number
+  /** Only there, when given. */
+  readonly within?: Spans
   /** Whether it holds the beginning of a run, which a state logger may not have read before a trip cut it short. */
   readonly fromStart?: boolean
 }
@@ -81,7 +85,10 @@ export function layeredWindow(
   const { energised } = frame.timeline
   const knownHere = intersect(known, energised)
   const knownMs = totalMs(knownHere)
-  const held = layers.map(({ inside }) => intersect(inside, knownHere))
+  const held = layers.map(({ inside, within }) => {
+    const here = intersect(inside, knownHere)
+    return within === undefined ? here : intersect(here, within)
+  })
   const heldMs = totalMs(held[0] ?? NO_SPANS)
   if (heldMs < 3 * MINUTE_MS || knownMs - heldMs < 3 * MINUTE_MS) return null
   const shares = held.map((spans) => trips.map((trip) => shareOfTrip(spans, energised, trip)))

@@ -1,9 +1,11 @@
 import { laggedCorrelation } from '../../statistics/correlation.ts'
 import { quantile } from '../../statistics/quantile.ts'
 import { lowerBound, type Series } from '../../timeline/series.ts'
+import type { Spans } from '../../timeline/spans.ts'
 import type { ExposureWindow } from '../line-up.ts'
 import { heldAbove, thinned } from './held.ts'
-import { type Frame, HOUR_MS, normalised, windowOf } from './trip-share.ts'
+import { withKicks } from './kicks.ts'
+import { type Frame, HOUR_MS, type Layer, normalised, windowOf } from './trip-share.ts'
 
 /** Half-lives of drying and lags that are tried, h. */
 const HALF_LIVES = [1.5, 4, 9, 20] as const
@@ -48,27 +50,25 @@ export function dryings(frame: Frame, remainder: Series | null): Drying[] {
  * are averaged over, those that fit the leakage weighing more.
  */
 export function rainWindows(frame: Frame, laws: readonly Drying[]): ExposureWindow[] {
-  const windows: (ExposureWindow | null)[] = []
+  const windows: ExposureWindow[] = []
   for (const { halfLife, lag, wetness, correlation } of laws) {
+    const prior = Math.max(0.1, correlation) ** 4
     const sample = thinned(wetness.v, 5_000)
-    const seen = new Set<number>()
-    for (const share of WET_SHARES) {
-      const mm = Math.max(LEAST_MM, Number(quantile(sample, 1 - share).toPrecision(2)))
-      if (seen.has(mm)) continue
-      seen.add(mm)
+    const cuts = [...new Set(WET_SHARES.map((share) => Math.max(LEAST_MM, Number(quantile(sample, 1 - share).toPrecision(2)))))]
+    const drying = `drying by half in ${halfLife} h${lag > 0 ? `, felt ${lag} h late` : ''}`
+    const layers: Layer[] = []
+    let known: Spans | null = null
+    for (const mm of cuts.sort((a, b) => a - b)) {
       const held = heldAbove(wetness, mm, true, lag * HOUR_MS)
-      const words = `while it was wet (over ${mm} mm of rain still standing, drying by half in ${halfLife} h${lag > 0 ? `, felt ${lag} h late` : ''})`
-      windows.push(
-        windowOf(
-          frame,
-          `wet-${halfLife}-${lag}-${mm}`,
-          words,
-          Math.max(0.1, correlation) ** 4,
-          held.inside,
-          held.known,
-        ),
-      )
+      known = held.known
+      const words = `while it was wet (over ${mm} mm of rain still standing, ${drying})`
+      windows.push(...withKicks(frame, `wet-${halfLife}-${lag}-${mm}`, words, prior, [{ inside: held.inside, weight: 1 }], known))
+      const below = cuts[cuts.indexOf(mm) - 1] ?? 0
+      layers.push({ inside: held.inside, weight: mm ** 2 - below ** 2 })
     }
+    if (known === null || layers.length < 2) continue
+    const words = `while it was wet, the more the wetter (${drying})`
+    windows.push(...withKicks(frame, `wetter-${halfLife}-${lag}`, words, 2 * prior, layers, known))
   }
   return normalised(windows)
 }
@@ -98,15 +98,36 @@ export function temperatureWindows(frame: Frame): ExposureWindow[] {
   ])
 }
 
-/** Hours of heavy load on the whole group: what fires a neutral–earth fault. */
+/** Shares of the time below which the group's load current counts as light, and how steeply trips come with more of it. */
+const LOAD_CUTS = [0.7, 0.85, 0.95, 0.98, 0.995] as const
+const LOAD_POWERS = [3, 8] as const
+
+/**
+ * Hours of heavy load on the whole group, and load the more the heavier: what fires a neutral–earth fault.
+ */
 export function loadCurrentWindows(frame: Frame): ExposureWindow[] {
-  return quantileWindows(frame, frame.timeline.loadCurrent, 'A', [
-    [0.7, true],
-    [0.85, true],
-    [0.95, true],
-    [0.98, true],
-    [0.995, true],
-  ])
+  const { loadCurrent } = frame.timeline
+  const plain = quantileWindows(
+    frame,
+    loadCurrent,
+    'A',
+    LOAD_CUTS.map((q) => [q, true] as const),
+  )
+  if (loadCurrent === null || loadCurrent.t.length < 20) return plain
+  const sample = thinned(loadCurrent.v, 20_000)
+  const cuts = [0.5, ...LOAD_CUTS].map((q) => quantile(sample, q))
+  const top = cuts.at(-1)!
+  if (!(top > 0)) return plain
+  const held = cuts.map((cut) => heldAbove(loadCurrent, cut, true, 0))
+  const steep = LOAD_POWERS.map((power) => {
+    const weight = (amps: number): number => (Math.max(0, amps) / top) ** power
+    const layers = held.map(({ inside }, j): Layer => {
+      const below = j === 0 ? 0 : weight(cuts[j - 1]!)
+      return { inside, weight: weight(cuts[j]!) - below }
+    })
+    return withKicks(frame, `heavier-${power}`, 'under load, the more the heavier', 0.35, layers, held[0]!.known)
+  })
+  return normalised([...plain.map((w) => ({ ...w, prior: 0.3 * w.prior })), ...steep.flat()])
 }
 
 function quantileWindows(
