@@ -19,7 +19,7 @@ import {
   wetTime,
 } from './prior-odds.ts'
 import type { RunProfile } from './run-profiles.ts'
-import { type TimedCluster } from './timed/timed-clusters.ts'
+import type { TimedCluster } from './timed/timed-clusters.ts'
 import { whenWords } from './timed/timed-step.ts'
 import { clockWindows, periodWindows } from './windows/clock-windows.ts'
 import { heldToTrips } from './windows/held-to-trips.ts'
@@ -143,7 +143,9 @@ function timedWindows(
     const weight = timedFactor(log, cluster)
     factor = Math.max(factor ?? 0, weight)
     const words = `while an unnamed load was due (${whenWords(cluster.schedule)})`
-    const starts = spansOf([...eachSpan(cluster.due)].map(({ from, to }) => [from, Math.min(to, from + EARLY_MS)] as const))
+    const starts = spansOf(
+      [...eachSpan(cluster.due)].map(({ from, to }) => [from, Math.min(to, from + EARLY_MS)] as const),
+    )
     const run: Layer = { inside: cluster.due, weight: 1 }
     const first: Layer = { inside: starts, weight: EARLY_TIMES - 1 }
     return [
@@ -157,7 +159,9 @@ function timedWindows(
 function always(frame: Frame, words: string, prior: number): ExposureWindow[] {
   const inside = new Float64Array(frame.trips.length).fill(1)
   const hoursBy = frame.habits.map(() => frame.hours)
-  return [{ key: 'any', words, prior, hoursBy, inside, insideHours: frame.hours, weightsBy: frame.habits.map(() => inside) }]
+  return [
+    { key: 'any', words, prior, hoursBy, inside, insideHours: frame.hours, weightsBy: frame.habits.map(() => inside) },
+  ]
 }
 
 /**

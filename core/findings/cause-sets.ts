@@ -62,11 +62,26 @@ export function marginal(
   return approximate ? laplace(trips, causes, priors) : exact(trips, causes, priors, touched)
 }
 
-/** ln ∫ λ^k e^(−λ hours) gamma(λ; shape, rate) dλ */
-function gammaIntegral(p: Prior, k: number): number {
-  return (
-    p.shape * Math.log(p.rate) - logGamma(p.shape) + logGamma(p.shape + k) - (p.shape + k) * Math.log(p.rate + p.hours)
-  )
+/** ln Γ(shape + k) for k = 0, 1, …, kept for the two shapes in use. */
+const logGammas = new Map<number, number[]>()
+
+function logGammaAt(shape: number, k: number): number {
+  let table = logGammas.get(shape)
+  if (table === undefined) {
+    table = []
+    logGammas.set(shape, table)
+  }
+  for (let j = table.length; j <= k; j++) table.push(logGamma(shape + j))
+  return table[k]!
+}
+
+/** ln ∫ λ^k e^(−λ hours) gamma(λ; shape, rate) dλ for k from 0 to `most`. */
+function gammaIntegrals({ shape, rate, hours }: Prior, most: number): Float64Array {
+  const start = shape * Math.log(rate) - logGammaAt(shape, 0)
+  const slope = Math.log(rate + hours)
+  const integrals = new Float64Array(most + 1)
+  for (let k = 0; k <= most; k++) integrals[k] = start + logGammaAt(shape, k) - (shape + k) * slope
+  return integrals
 }
 
 function exact(
@@ -77,7 +92,7 @@ function exact(
 ): Marginal {
   const m = causes.length
   const side = touched.length + 1
-  const integrals = priors.map((p) => Float64Array.from({ length: trips + 1 }, (_, k) => gammaIntegral(p, k)))
+  const integrals = priors.map((p) => gammaIntegrals(p, trips))
   if (m === 0) return { log: integrals[0]![trips]!, expected: [] }
 
   // coefficients[k₁ + side k₂ + side² k₃]: of the product over trips, by how many trips each cause made

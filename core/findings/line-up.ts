@@ -78,6 +78,9 @@ const WINDOWS_IN_TRIPLES = 2
 const SUSPECTS_IN_PAIRS = 12
 const SUSPECTS_IN_TRIPLES = 5
 
+/** A habit less likely than the best by so many powers of e is left out of larger sets. */
+const HOPELESS = 7
+
 interface Weighed {
   readonly members: readonly number[]
   readonly windows: readonly ExposureWindow[]
@@ -110,11 +113,14 @@ export function lineUp(
     }
   }
   const sets: Weighed[] = []
+  const byPace: number[][] = paces.map(() => [])
+  let asked = paces.map((_, k) => k)
   const add = (members: readonly number[], windows: readonly ExposureWindow[]): number => {
-    const { log, expected } = overPaces(hours, trips, windows, paces)
+    const { log, expected, each } = overPaces(hours, trips, windows, paces, asked)
     let logWeight = log + (members.length === 0 ? Math.log(NO_CAUSE) : (members.length - 1) * Math.log(EXTRA_CAUSE))
     for (const c of members) logWeight += Math.log(candidates[c]!.odds)
     for (const w of windows) logWeight += Math.log(w.prior)
+    for (const m of each) byPace[m.pace]!.push(logWeight - log + m.log)
     sets.push({ members, windows, logWeight, expected })
     return logWeight
   }
@@ -129,6 +135,11 @@ export function lineUp(
   ranked.sort((a, b) => b.log - a.log || a.c - b.c)
 
   const best = (s: (typeof ranked)[number], n: number): ExposureWindow[] => s.scored.slice(0, n).map((x) => x.window)
+  // sets of several need no habit that single causes and chance have ruled out
+  const mass = byPace.map(logSum)
+  const most = Math.max(...mass)
+  asked = asked.filter((k) => mass[k]! > most - HOPELESS)
+
   const isOneThing = (a: (typeof ranked)[number], b: (typeof ranked)[number]): boolean =>
     areOneThing(candidates[a.c]!, candidates[b.c]!)
   const inPairs = ranked.slice(0, SUSPECTS_IN_PAIRS)
@@ -164,21 +175,40 @@ function areOneThing(a: Candidate, b: Candidate): boolean {
   return (a.family !== undefined && a.family === b.family) || a.partOf === b.of || b.partOf === a.of
 }
 
-/** The marginal likelihood of one set, averaged over the habits. */
+/** The marginal likelihood of one set under each habit, and averaged over them. */
+interface Averaged {
+  readonly log: number
+  readonly expected: readonly number[]
+  /** Of each habit that was asked, its prior included. */
+  readonly each: readonly { readonly pace: number; readonly log: number }[]
+}
+
 function overPaces(
   hours: number,
   trips: number,
   windows: readonly ExposureWindow[],
   paces: readonly Pace[],
-): { log: number; expected: number[] } {
-  const each = paces.map((pace, k): Marginal => {
-    const causes = windows.map((w): CauseWindow => ({ hours: w.hoursBy[k]!, weights: w.weightsBy[k]! }))
-    const { log, expected } = marginal(hours, trips, causes)
-    return { log: log + pace.logDensity + Math.log(pace.prior), expected }
+  asked: readonly number[],
+): Averaged {
+  // many windows (every period) are the same under all habits
+  const same = windows.every(
+    (w) => w.weightsBy.every((x) => x === w.weightsBy[0]) && w.hoursBy.every((h) => h === w.hoursBy[0]),
+  )
+  let once: Marginal | null = null
+  const each = asked.map((k) => {
+    const m =
+      once ??
+      marginal(
+        hours,
+        trips,
+        windows.map((w): CauseWindow => ({ hours: w.hoursBy[k]!, weights: w.weightsBy[k]! })),
+      )
+    if (same) once = m
+    return { pace: k, log: m.log + paces[k]!.logDensity + Math.log(paces[k]!.prior), expected: m.expected }
   })
   const log = logSum(each.map((m) => m.log))
   const expected = windows.map((_, j) => each.reduce((sum, m) => sum + Math.exp(m.log - log) * m.expected[j]!, 0))
-  return { log, expected }
+  return { log, expected, each }
 }
 
 function summarise(

@@ -39,7 +39,9 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const courses = kept.map((trip) => measured.trips[timeline.trips.indexOf(trip)]?.course ?? 'unseen')
   const candidates = kept.length === 0 || hours <= 0 ? [] : candidatesOf(frame, courses, measured, log)
   const weighed: LineUp =
-    candidates.length === 0 ? { standings: [], none: 1, unexplained: 1 } : lineUp(hours, kept.length, candidates, frame.habits)
+    candidates.length === 0
+      ? { standings: [], none: 1, unexplained: 1 }
+      : lineUp(hours, kept.length, candidates, frame.habits)
   const tested = weighed.standings.flatMap((s) => {
     const top = s.windows[0]
     return top === undefined ? [] : [{ of: s.of, window: top.window }]
@@ -120,7 +122,8 @@ function sameExposure(frame: Frame, standing: Standing, all: readonly Standing[]
     .filter(({ windows }) => {
       const theirs = windows[0]?.window
       if (theirs === undefined) return false
-      const hours = Math.abs(theirs.insideHours - mine.insideHours) <= 0.05 * Math.max(theirs.insideHours, mine.insideHours)
+      const hours =
+        Math.abs(theirs.insideHours - mine.insideHours) <= 0.05 * Math.max(theirs.insideHours, mine.insideHours)
       return hours && frame.trips.every((_, i) => Math.abs(theirs.inside[i]! - mine.inside[i]!) < 0.05)
     })
     .map((other) => other.of)

@@ -8,7 +8,11 @@ const KICK = 20
 
 /** The minute after every start that is known, of whatever thing. */
 export function kicksOf(timeline: Timeline): Spans {
-  return spansOf(timeline.things.flatMap(({ changes }) => changes.filter((c) => c.on).map(({ at }) => [at, at + MINUTE_MS] as const)))
+  return spansOf(
+    timeline.things.flatMap(({ changes }) =>
+      changes.filter((c) => c.on).map(({ at }) => [at, at + MINUTE_MS] as const),
+    ),
+  )
 }
 
 /**
@@ -23,9 +27,18 @@ export function withKicks(
   layers: readonly Layer[],
   known: Spans,
 ): ExposureWindow[] {
-  const kicked = layers.map((layer): Layer => ({ inside: layer.inside, weight: layer.weight * (KICK - 1), within: frame.kicks }))
+  const kicked = layers.map(
+    (layer): Layer => ({ inside: layer.inside, weight: layer.weight * (KICK - 1), within: frame.kicks }),
+  )
   return [
     layeredWindow(frame, key, words, prior / 2, layers, known),
-    layeredWindow(frame, `${key}-kick`, `${words}, mostly as something came on`, prior / 2, [...layers, ...kicked], known),
+    layeredWindow(
+      frame,
+      `${key}-kick`,
+      `${words}, mostly as something came on`,
+      prior / 2,
+      [...layers, ...kicked],
+      known,
+    ),
   ].filter((w): w is ExposureWindow => w !== null)
 }

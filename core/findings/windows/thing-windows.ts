@@ -41,7 +41,8 @@ export function thingWindows(frame: Frame, { thing, blind }: HeldThing): Exposur
     ).on
   const isCircuit = thing.kind === 'circuit'
   const plural = (minutes: number): string => (minutes === 1 ? 'a minute' : `${minutes} minutes`)
-  const ofStart = (minutes: number): string => `within ${plural(minutes)} of ${isCircuit ? 'being switched on' : 'its start'}`
+  const ofStart = (minutes: number): string =>
+    `within ${plural(minutes)} of ${isCircuit ? 'being switched on' : 'its start'}`
   const whileOn = isCircuit ? 'while it was on' : 'while it ran'
   const run: Layer = { inside: on, weight: 1, fromStart: true }
   const windows: (ExposureWindow | null)[] = [layeredWindow(frame, 'on', whileOn, WHILE_ON, [run], known, blind)]

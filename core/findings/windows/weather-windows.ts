@@ -54,7 +54,9 @@ export function rainWindows(frame: Frame, laws: readonly Drying[]): ExposureWind
   for (const { halfLife, lag, wetness, correlation } of laws) {
     const prior = Math.max(0.1, correlation) ** 4
     const sample = thinned(wetness.v, 5_000)
-    const cuts = [...new Set(WET_SHARES.map((share) => Math.max(LEAST_MM, Number(quantile(sample, 1 - share).toPrecision(2)))))]
+    const cuts = [
+      ...new Set(WET_SHARES.map((share) => Math.max(LEAST_MM, Number(quantile(sample, 1 - share).toPrecision(2))))),
+    ]
     const drying = `drying by half in ${halfLife} h${lag > 0 ? `, felt ${lag} h late` : ''}`
     const layers: Layer[] = []
     let known: Spans | null = null
@@ -62,7 +64,9 @@ export function rainWindows(frame: Frame, laws: readonly Drying[]): ExposureWind
       const held = heldAbove(wetness, mm, true, lag * HOUR_MS)
       known = held.known
       const words = `while it was wet (over ${mm} mm of rain still standing, ${drying})`
-      windows.push(...withKicks(frame, `wet-${halfLife}-${lag}-${mm}`, words, prior, [{ inside: held.inside, weight: 1 }], known))
+      windows.push(
+        ...withKicks(frame, `wet-${halfLife}-${lag}-${mm}`, words, prior, [{ inside: held.inside, weight: 1 }], known),
+      )
       const below = cuts[cuts.indexOf(mm) - 1] ?? 0
       layers.push({ inside: held.inside, weight: mm ** 2 - below ** 2 })
     }

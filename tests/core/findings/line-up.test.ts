@@ -4,7 +4,7 @@ import { type Candidate, type ExposureWindow, lineUp } from '../../../core/findi
 
 const window = (key: string, hours: number, inside: number[], prior = 1): ExposureWindow => {
   const shares = Float64Array.from(inside)
-  return { key, words: key, prior, hours, inside: shares, weights: shares }
+  return { key, words: key, prior, hoursBy: [hours], weightsBy: [shares], inside: shares, insideHours: hours }
 }
 const suspect = (of: string, windows: ExposureWindow[], odds = 0.08): Candidate => ({ of, odds, windows })
 
@@ -95,5 +95,44 @@ describe('lineUp', () => {
     const b = suspect('load:b', [window('on', 20, [0, 1, 1, 1, 0])])
     const l = lineUp(100, 5, [a, b])
     expect(l.standings.reduce((sum, s) => sum + s.share, l.unexplained)).toBeCloseTo(1, 10)
+  })
+
+  it('never puts two names of the same thing into one set', () => {
+    // both explain half of the trips; as two causes they would both be sure
+    const a = { ...suspect('clock', [window('02:00+20', 4, [1, 1, 1, 1, 1, 0, 0, 0, 0, 0])]), family: 'timer' }
+    const b = suspect('sun', [window('sunset', 4, [0, 0, 0, 0, 0, 1, 1, 1, 1, 1])])
+    const apart = lineUp(336, 10, [a, b])
+    const same = lineUp(336, 10, [a, { ...b, family: 'timer' }])
+    expect(apart.standings.map((s) => s.probability).every((p) => p > 0.9)).toBe(true)
+    expect(same.standings.reduce((sum, s) => sum + s.probability, 0)).toBeLessThan(1.05)
+  })
+
+  it('never blames a circuit beside the load on it', () => {
+    const circuit = suspect('circuit:1', [window('on', 60, [1, 1, 1, 1, 1, 1, 1, 1])])
+    const load = { ...suspect('load:a', [window('on', 6, [1, 1, 1, 1, 1, 1, 1, 0])]), partOf: 'circuit:1' }
+    const { standings } = lineUp(336, 8, [circuit, load])
+    expect(standings[1]!.probability).toBeGreaterThan(0.9)
+    expect(standings[0]!.probability + standings[1]!.probability).toBeLessThan(1.05)
+  })
+
+  it('averages over habits by what the trips say for each', () => {
+    // Two habits that weigh the exposure as 5 and 50 h; trips that are e^6 times likelier under the second leave it alone.
+    const shares = Float64Array.from([1, 1, 1, 1])
+    const both = (hoursBy: number[]): ExposureWindow => ({
+      key: 'on',
+      words: 'on',
+      prior: 1,
+      hoursBy,
+      weightsBy: [shares, shares],
+      inside: shares,
+      insideHours: hoursBy[0]!,
+    })
+    const flat = { prior: 0.5, logDensity: 0 }
+    const sure = lineUp(168, 4, [suspect('load:a', [both([5, 50])])], [flat, { prior: 0.5, logDensity: 30 }])
+    const alone = lineUp(168, 4, [suspect('load:a', [window('on', 50, [1, 1, 1, 1])])])
+    expect(sure.standings[0]!.probability).toBeCloseTo(alone.standings[0]!.probability, 8)
+    const equal = lineUp(168, 4, [suspect('load:a', [both([5, 5])])], [flat, flat])
+    const once = lineUp(168, 4, [suspect('load:a', [window('on', 5, [1, 1, 1, 1])])])
+    expect(equal.standings[0]!.probability).toBeCloseTo(once.standings[0]!.probability, 10)
   })
 })
