@@ -4,6 +4,7 @@ import { runsOf } from './habit.ts'
 import type { Installation, RcdPlan } from './installation.ts'
 import { type LoadState, loadState } from './load-state.ts'
 import type { Keeper } from './people.ts'
+import type { Tally } from './true-budget.ts'
 import { type Weather, wetness } from './weather.ts'
 
 const MINUTE = 60_000
@@ -54,6 +55,8 @@ export interface RunSite {
   readonly keeper: Keeper
   /** Instants of transients that reach every device. */
   readonly sharedSurges: readonly number[]
+  /** Keeps account of what each circuit and load adds. */
+  readonly tally?: Tally
 }
 
 /**
@@ -113,6 +116,7 @@ export function runDevice(rcd: RcdPlan, site: RunSite, watch: (moment: Moment) =
     }
     if (closed && rcd.neutralEarth) g += rcd.neutralEarth * amps
     Object.assign(moment, { t, closed, g, b, amps })
+    if (closed && site.tally) tell(site.tally, rcd, circuits, loads, minute, moment)
 
     let peak = Math.sqrt((g + brief) ** 2 + b * b)
     let by: TrueTrip['by'] | null = null
@@ -147,6 +151,7 @@ export function runDevice(rcd: RcdPlan, site: RunSite, watch: (moment: Moment) =
       watch(moment)
       moment.on.fill(0)
       for (const load of loads) load.interrupt()
+      site.tally?.interrupt()
       Object.assign(moment, { t: at, closed: false, g: 0, b: 0, amps: 0 })
       watch(moment)
       moment.t = t
@@ -192,6 +197,39 @@ function actorOf(plan: Actor['plan'], circuit: number, site: RunSite): Actor {
       if (!plan.resumes) over = at
     },
   }
+}
+
+/** What the switching of each thing would take away now. */
+function tell(
+  tally: Tally,
+  rcd: RcdPlan,
+  circuits: readonly {
+    readonly plan: RcdPlan['circuits'][number]
+    readonly wet: Float64Array | null
+    readonly stays: number
+    readonly off: boolean
+  }[],
+  loads: readonly Actor[],
+  minute: number,
+  moment: Moment,
+): void {
+  const { g, b, on } = tally
+  circuits.forEach(({ plan, wet, stays, off }, c) => {
+    g[c] = (1 - stays) * (plan.standing.g + (wet ? wet[minute]! * plan.damp!.mA : 0))
+    b[c] = (1 - stays) * plan.standing.b
+    on[c] = off ? 0 : 1
+  })
+  loads.forEach(({ plan, circuit, state }, l) => {
+    const k = circuits.length + l
+    const running = moment.on[l] === 1
+    const shared = running ? (rcd.neutralEarth ?? 0) * plan.amps : 0
+    on[k] = running ? 1 : 0
+    g[k] = state.g + shared - plan.idle.g
+    b[k] = state.b - plan.idle.b
+    g[circuit]! += state.g + shared
+    b[circuit]! += state.b
+  })
+  tally.step(moment.g, moment.b)
 }
 
 function faultsNow(

@@ -8,6 +8,7 @@ import { keeperOf } from './people.ts'
 import { recorderOf } from './recorder.ts'
 import { ampsChannel, leakageChannel, sheetOf, stateChannel } from './sheet-of.ts'
 import type { Simulated, Truth } from './simulated.ts'
+import { type TrueLine, tallyOf } from './true-budget.ts'
 import { drawWeather, type Weather } from './weather.ts'
 
 const HOUR = 3_600_000
@@ -26,7 +27,7 @@ export interface Plan {
   readonly timetables?: readonly Timetable[]
   readonly tests?: readonly SiteTest[]
   readonly rampTripMa?: Readonly<Record<string, number>>
-  readonly truth: Omit<Truth, 'trips'>
+  readonly truth: Omit<Truth, 'trips' | 'budget'>
   /** Told every step of every device. */
   readonly watch?: (rcd: string, moment: Moment) => void
 }
@@ -40,6 +41,7 @@ export function simulate(plan: Plan): Simulated {
   const series = new Map<string, Series>()
   const trips: Trip[] = []
   const truths: TrueTrip[] = []
+  const budget = new Map<string, TrueLine>()
   for (const rcd of installation.rcds) {
     const keeper = keeperOf(plan.people, clock, draws(seed, `people ${rcd.ref}`))
     const channels = {
@@ -53,7 +55,9 @@ export function simulate(plan: Plan): Simulated {
     const stepMs = plan.stepMs ?? Math.min(10_000, Math.max(1_000, intervalMs))
     const recorder = logger && recorderOf({ ...logger, intervalMs }, channels, from, rcd.flickerMa, seed)
     const setting = { from, to, clock, latitude: installation.latitude, longitude: installation.longitude }
-    const site = { installation, weather, setting, seed, stepMs, keeper, sharedSurges }
+    // Without a logger there is no budget to compare with; whoever only counts trips is spared the account.
+    const tally = logger === null ? undefined : tallyOf(rcd)
+    const site = { installation, weather, setting, seed, stepMs, keeper, sharedSurges, ...(tally ? { tally } : {}) }
     const happened = runDevice(rcd, site, (moment) => {
       recorder?.take(moment)
       plan.watch?.(rcd.ref, moment)
@@ -62,6 +66,7 @@ export function simulate(plan: Plan): Simulated {
       trips.push(openAtEnd(keeper.note(rcd.ref, trip.at, trip.restoredAt, trip.lastClosed, trip.running), trip, to))
     }
     truths.push(...happened)
+    for (const [of, line] of tally?.lines() ?? []) budget.set(of, line)
     for (const [ref, column] of recorder?.series() ?? []) series.set(ref, column)
   }
   if (logger?.weather) for (const [ref, column] of weatherSeries(weather, from, to)) series.set(ref, column)
@@ -75,7 +80,7 @@ export function simulate(plan: Plan): Simulated {
     timetables: plan.timetables ?? [],
     tests: plan.tests ?? [],
     remedies: [],
-    truth: { ...plan.truth, trips: truths },
+    truth: { ...plan.truth, trips: truths, budget },
   }
 }
 

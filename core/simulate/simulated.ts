@@ -3,6 +3,7 @@ import type { SiteSheet } from '../contract/site-sheet.ts'
 import type { Evidence, Kept } from '../timeline/evidence.ts'
 import { type Series, sliceSeries } from '../timeline/series.ts'
 import type { TrueTrip } from './device-run.ts'
+import type { TrueLine } from './true-budget.ts'
 
 /** What nobody on site knows. */
 export interface Truth {
@@ -15,6 +16,8 @@ export interface Truth {
   /** First suspects that count as right; more than `causes` where the data cannot tell more. */
   readonly answers: readonly string[]
   readonly trips: readonly TrueTrip[]
+  /** What each circuit and load really adds, by reference; empty without a logger. */
+  readonly budget: ReadonlyMap<string, TrueLine>
 }
 
 /** A simulated site: what is posted, and the truth behind it. */
