@@ -6,7 +6,7 @@ import { heldAbove, thinned } from '../windows/held.ts'
 import { figure } from '../words.ts'
 import { sensible } from './channel-sense.ts'
 import { dewPoints } from './dew-point.ts'
-import { type Hourly, hourly, withoutDrift } from './hourly.ts'
+import { type Hourly, hourly, withoutDaily, withoutDrift } from './hourly.ts'
 import { DRIFT_HOURS } from './level-of.ts'
 import { type LevelResponse, levelResponse } from './level-response.ts'
 import { coincidence, onsets } from './onsets.ts'
@@ -68,8 +68,9 @@ export function humidityPattern(timeline: Timeline, trips: readonly number[] | n
 
 function follows(timeline: Timeline, level: Hourly | null, series: Series, amount: number): LevelResponse | null {
   if (level === null) return null
-  const driver = withoutDrift(hourly(series, timeline.from, timeline.to), DRIFT_HOURS)
-  return levelResponse(level, [{ halfLife: null, driver, amount }], true)
+  // warm hours and busy hours are the same hours: only what differs from day to day tells
+  const driver = withoutDaily(withoutDrift(hourly(series, timeline.from, timeline.to), DRIFT_HOURS))
+  return levelResponse(withoutDaily(level), [{ halfLife: null, driver, amount }])
 }
 
 function cutOf(series: Series, share: number): number {

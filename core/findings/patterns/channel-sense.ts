@@ -21,15 +21,14 @@ export function sensible(
   { name, low, high }: Possible,
 ): { readonly series: Series; readonly refused: null } | { readonly series: null; readonly refused: string } {
   if (series === null || series.t.length === 0) return { series: null, refused: `No ${name} is logged.` }
-  const keep: number[] = []
-  for (let i = 0; i < series.v.length; i++) if (series.v[i]! >= low && series.v[i]! <= high) keep.push(i)
-  if (series.v.length - keep.length > MOST_IMPOSSIBLE * series.v.length) {
+  let possible = 0
+  for (let i = 0; i < series.v.length; i++) if (series.v[i]! >= low && series.v[i]! <= high) possible++
+  if (series.v.length - possible > MOST_IMPOSSIBLE * series.v.length) {
     return { series: null, refused: `The ${name} read is mostly impossible: check its channel.` }
   }
+  const isPossible = (_: number, i: number): boolean => series.v[i]! >= low && series.v[i]! <= high
   const kept =
-    keep.length === series.v.length
-      ? series
-      : { t: Float64Array.from(keep, (i) => series.t[i]!), v: Float64Array.from(keep, (i) => series.v[i]!) }
+    possible === series.v.length ? series : { t: series.t.filter(isPossible), v: series.v.filter(isPossible) }
   const sample = thinned(kept.v, 5_000)
   const [least, most] = [quantile(sample, 0), quantile(sample, 1)]
   if (most - least <= 1e-9 * Math.max(1, Math.abs(most)))

@@ -85,3 +85,16 @@ export function standingRain({ v, step, from }: Hourly, halfLife: number): Hourl
   })
   return { from, step, v: out }
 }
+
+/** The values less the mean of their own hour of the day, so that a rhythm common to all days does not count; gaps stay gaps. */
+export function withoutDaily({ v, step, from }: Hourly): Hourly {
+  const perDay = Math.max(1, Math.round(24 / step))
+  const sums = new Float64Array(perDay)
+  const counts = new Float64Array(perDay)
+  v.forEach((x, i) => {
+    if (!Number.isFinite(x)) return
+    sums[i % perDay]! += x
+    counts[i % perDay]!++
+  })
+  return { from, step, v: v.map((x, i) => x - sums[i % perDay]! / Math.max(1, counts[i % perDay]!)) }
+}

@@ -59,9 +59,14 @@ export function levelPeriod(level: Hourly | null): Pattern {
     }
   }
   const swing = 2 * Math.sqrt(2 * power[at]! * varianceOf(v))
-  const daily = Math.abs(hours - 24) < 24 * 24 * step ? ', once a day' : ''
+  const said = `by about ${current(swing)} mA from low to high`
+  const parts = Math.round(24 / hours)
+  const isOfDay = parts >= 1 && Math.abs(24 / hours - parts) < 24 * step
+  const often = parts === 1 ? '' : `, most clearly ${parts} times a day`
   return {
-    verdict: `The leakage itself swings with a period of ${figure(hours)} hours${daily}, by about ${current(swing)} mA from low to high.`,
+    verdict: isOfDay
+      ? `The leakage itself swings with the day${often}, ${said}.`
+      : `The leakage itself swings with a period of ${figure(hours)} hours, ${said}.`,
     ...figures,
     hours: rounded(hours),
     swingMa: rounded(swing),

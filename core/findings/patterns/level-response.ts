@@ -10,7 +10,9 @@ const ROTATIONS = 99
 /** Rise of −2 ln likelihood that bounds a 90 % interval: χ² with one degree of freedom. */
 const NINETY = 2.706
 /** Stretches that the rotations work on; finer ones are thinned out. */
-const MOST_ROTATED = 2_500
+const MOST_ROTATED = 1_000
+/** Of many laws each so-manieth is rotated: neighbours are much alike. */
+const LAWS_ROTATED = 4
 
 /** One law by which a driver may act: its values under some decay, as the level would feel them at once. */
 export interface Law {
@@ -42,9 +44,9 @@ export interface LevelResponse {
  * Does the level follow a driver, after how many hours, under which decay: the law and lag whose straight line, fitted on four fifths of
  * the time, foretells the fifth held out best (Stone 1974), with an interval of the lag by profile likelihood, hours that
  * resemble their neighbours counted as fewer. p by rotating the level against the driver (Chung & Fraser 1958), which keeps both
- * series' own rhythm; `whole days` keeps the daily rhythm of both together too. Null with too few hours or without change.
+ * series' own rhythm. Null with too few hours or without change.
  */
-export function levelResponse(level: Hourly, laws: readonly Law[], keepsDays: boolean): LevelResponse | null {
+export function levelResponse(level: Hourly, laws: readonly Law[]): LevelResponse | null {
   const lags = Array.from({ length: Math.floor(LONGEST_LAG / level.step) + 1 }, (_, k) => k)
   let best: { law: Law; lag: number; fit: Fit } | null = null
   const byLag = new Float64Array(lags.length).fill(Number.POSITIVE_INFINITY)
@@ -71,7 +73,7 @@ export function levelResponse(level: Hourly, laws: readonly Law[], keepsDays: bo
     rise: fit.slope * law.amount,
     correlation: fit.correlation,
     heldOut: 1 - fit.missed / fit.total,
-    p: rotated(level, laws, keepsDays),
+    p: rotated(level, laws),
     hours: fit.n * level.step,
   }
 }
@@ -147,16 +149,18 @@ function resemblanceOf(x: Float64Array, y: Float64Array, lag: number, { slope, i
 }
 
 /** Share of rotations whose largest correlation over laws and a few lags is at least the unrotated one's. */
-function rotated(level: Hourly, laws: readonly Law[], keepsDays: boolean): number {
+function rotated(level: Hourly, laws: readonly Law[]): number {
   const n = level.v.length
   const day = Math.max(1, Math.round(24 / level.step))
   const lags = [0, 1, 2, 4, 6, 9, 12, 18, 24]
     .map((h) => Math.round(h / level.step))
     .filter((k, i, a) => a.indexOf(k) === i)
   const stride = Math.max(1, Math.ceil(n / MOST_ROTATED))
+  const every = Math.ceil(laws.length / LAWS_ROTATED)
+  const tried = laws.filter((_, i) => i % every === every - 1)
   const greatest = (shift: number): number => {
     let most = 0
-    for (const { driver } of laws)
+    for (const { driver } of tried)
       for (const lag of lags) most = Math.max(most, Math.abs(correlation(driver.v, level.v, lag - shift, stride)))
     return most
   }
@@ -166,9 +170,7 @@ function rotated(level: Hourly, laws: readonly Law[], keepsDays: boolean): numbe
   if (room < day) return 1
   let asMuch = 1
   for (let k = 0; k < ROTATIONS; k++) {
-    const any = day + Math.floor(random.uniform() * room)
-    // near whole days the daily rhythm of both stays together, and only what goes beyond it counts
-    const shift = keepsDays ? Math.round(any / day) * day + random.integer(3) - 1 : any
+    const shift = day + Math.floor(random.uniform() * room)
     if (greatest(shift) >= seen - 1e-12) asMuch++
   }
   return asMuch / (ROTATIONS + 1)

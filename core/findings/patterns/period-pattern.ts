@@ -17,9 +17,9 @@ const MOST_SIMULATIONS = 399
 const COST = 8_000_000
 const SPOKEN = 0.05
 /** Above this p a period is spoken of with doubt. */
-const SURE = 0.01
+const SURE = 0.005
 /** Share of the largest power that counts as as large. */
-const ALIKE = 0.9
+const ALIKE = 0.8
 
 /**
  * Whether trips keep a period from an hour to ten days: Rayleigh's power at every period, the largest compared with

@@ -63,7 +63,6 @@ function ofLevel(timeline: Timeline, level: Hourly): LevelResponse | null {
         { halfLife, driver: soaked, amount: 1 - Math.exp(-SPOKEN_MM / SOAKED_MM) },
       ]
     }),
-    false,
   )
 }
 

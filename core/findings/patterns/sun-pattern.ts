@@ -1,6 +1,5 @@
 import type { Pattern } from '../../contract/findings.ts'
 import { seededRandom } from '../../statistics/random.ts'
-import { vonMisesKappa } from '../../statistics/von-mises.ts'
 import { localClock } from '../../timeline/local-clock.ts'
 import { lowerBound } from '../../timeline/series.ts'
 import { type Spans, spansOf } from '../../timeline/spans.ts'
@@ -12,12 +11,16 @@ import { figure, rounded } from '../words.ts'
 import { CIRCLE_METHOD, type CircleTests, circleTests } from './circle-tests.ts'
 import { dayCircle } from './day-circle.ts'
 import { figuresOf } from './figures.ts'
+import { gathered } from './gathered.ts'
 import { ratePattern } from './rate-pattern.ts'
 
 const MINUTE_MS = 60_000
 const HALF_DAY_MS = 12 * 60 * MINUTE_MS
 const SPOKEN = 0.05
+/** Resamples, and those of many trips. */
 const DRAWS = 200
+const FEW_DRAWS = 50
+const MANY = 60
 /** Minutes from sunset or sunrise beyond which nothing is put down to them. */
 const FARTHEST = 180
 /** Clock and sun are told apart when the likelihoods differ by this factor and so large a share of resamples agrees. */
@@ -32,7 +35,7 @@ interface Around {
 
 /**
  * Whether trips keep to the sun: time from sunset and from sunrise tested as the time of day is, dark and dusk hours by exact
- * rates, all paid for (Bonferroni). What keeps to the sun is compared with the clock by the von Mises likelihood of either, with
+ * rates, all paid for (Bonferroni). What keeps to the sun is compared with the clock by the likelihood of either gathering (`gathered`), with
  * resampled trips (Efron 1979) to say how sure that is; a span in which the event hardly moved cannot tell them apart, and says so.
  */
 export function sunPattern(timeline: Timeline, trips: readonly number[], byClock: CircleTests): Pattern {
@@ -62,7 +65,7 @@ export function sunPattern(timeline: Timeline, trips: readonly number[], byClock
   return {
     verdict: `${whenOf(closest, trips.length)} ${told.words}`,
     p: rounded(p),
-    method: `${CIRCLE_METHOD}, for sunset and sunrise; compared with the clock by von Mises likelihoods and ${DRAWS} resamples`,
+    method: `${CIRCLE_METHOD}, for sunset and sunrise; compared with the clock by the likelihood of one gathering among events at random and by resamples (Efron 1979)`,
     trips: trips.length,
     event: closest.event,
     ...offsetsOf(closest),
@@ -135,11 +138,18 @@ function whenOf(around: Around, n: number): string {
   const { narrow, middle } = around.tests
   const offsets = offsetsOf(around)
   if (narrow !== null) {
-    const span = `from ${sideOf(offsets.fromMinutes!, event)} to ${sideOf(offsets.untilMinutes!, event)}`
+    const span = spanOf(offsets.fromMinutes!, offsets.untilMinutes!, event)
     return `${narrow.within} of ${n} trips came ${span}; ${figure(narrow.expected)} would by chance.`
   }
   if (middle !== null) return `${n} trips gather round ${sideOf(offsets.offsetMinutes!, event)}.`
   return `${n} trips do not spread evenly round ${event}, but gather at no single time from it.`
+}
+
+function spanOf(from: number, until: number, event: string): string {
+  if (from === until) return sideOf(from, event)
+  if (from >= 0) return `${from} to ${until} minutes after ${event}`
+  if (until <= 0) return `${-from} to ${-until} minutes before ${event}`
+  return `from ${sideOf(from, event)} to ${sideOf(until, event)}`
 }
 
 function sideOf(minutes: number, event: string): string {
@@ -160,14 +170,16 @@ function comparison(
   const moved = Math.max(...away) - Math.min(...away)
   const days = Math.max(1, Math.round((Math.max(...trips) - Math.min(...trips)) / 86_400_000))
   const n = trips.length
-  const favour = n * (gain(tests.resultant) - gain(byClock.resultant))
+  const favour = gathered(tests.places).gain - gathered(byClock.places).gain
   const random = seededRandom(`sun or clock ${tests.places.map((x) => x.toFixed(5)).join(' ')}`)
+  const draws = n > MANY ? FEW_DRAWS : DRAWS
   let forSun = 0
-  for (let draw = 0; draw < DRAWS; draw++) {
+  for (let draw = 0; draw < draws; draw++) {
     const drawn = Array.from({ length: n }, () => random.integer(n))
-    if (lengthOf(tests.places, drawn) > lengthOf(byClock.places, drawn)) forSun++
+    const gainOf = (places: readonly number[]): number => gathered(drawn.map((i) => places[i]!)).gain
+    if (gainOf(tests.places) > gainOf(byClock.places)) forSun++
   }
-  const agreed = forSun / DRAWS
+  const agreed = forSun / draws
   const figures = {
     movedMinutes: Math.round(moved),
     likelihoodOverClock: rounded(Math.exp(Math.min(50, favour))),
@@ -187,33 +199,4 @@ function comparison(
     words: `Over ${length} ${event} moved by ${Math.round(moved)} minutes: clock and sun cannot be told apart yet.`,
     figures: { ...figures, closer: 'unknown' },
   }
-}
-
-/** Log-likelihood that a von Mises distribution gains over an even one, for each event: κR − ln I₀(κ). */
-function gain(resultant: number): number {
-  const kappa = Math.min(1e4, vonMisesKappa(Math.min(resultant, 1 - 1e-6)))
-  return kappa * resultant - logBesselI0(kappa)
-}
-
-/** ln I₀(x): its power series below 20, its asymptotic one above (Abramowitz & Stegun 9.6.12, 9.7.1). */
-function logBesselI0(x: number): number {
-  if (x > 20) return x - 0.5 * Math.log(2 * Math.PI * x) + Math.log1p(1 / (8 * x) + 9 / (128 * x * x))
-  let term = 1
-  let sum = 1
-  for (let k = 1; k < 80; k++) {
-    term *= (x / (2 * k)) ** 2
-    sum += term
-  }
-  return Math.log(sum)
-}
-
-/** Mean resultant length of the places drawn. */
-function lengthOf(places: readonly number[], drawn: readonly number[]): number {
-  let cos = 0
-  let sin = 0
-  for (const i of drawn) {
-    cos += Math.cos(2 * Math.PI * places[i]!)
-    sin += Math.sin(2 * Math.PI * places[i]!)
-  }
-  return Math.hypot(cos, sin) / drawn.length
 }

@@ -7,6 +7,8 @@ const SPOKEN = 0.05
 /** A level is said to follow when none of 99 rotations does as well and hours held out are foretold so far. */
 const FOLLOWS_P = 0.01
 const LEAST_HELD_OUT = 0.05
+/** A lag known no closer than so many hours is none. */
+const VAGUE_HOURS = 10
 const RESPONSE_METHOD =
   'lagged regression of hourly levels, law and lag by held-out fit (Stone 1974), p by rotation (Chung & Fraser 1958)'
 
@@ -19,7 +21,12 @@ export interface Driver {
 
 /** Whether the level follows a driver beyond chance. */
 export function isResponse(response: LevelResponse | null): response is LevelResponse {
-  return response !== null && response.p <= FOLLOWS_P && response.heldOut >= LEAST_HELD_OUT
+  return (
+    response !== null &&
+    response.p <= FOLLOWS_P &&
+    response.heldOut >= LEAST_HELD_OUT &&
+    response.lagHigh - response.lagLow <= VAGUE_HOURS
+  )
 }
 
 /** How the level follows a driver, as one sentence. */
