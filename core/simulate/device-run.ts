@@ -151,7 +151,6 @@ export function runDevice(rcd: RcdPlan, site: RunSite, watch: (moment: Moment) =
       watch(moment)
       moment.on.fill(0)
       for (const load of loads) load.interrupt()
-      site.tally?.interrupt()
       Object.assign(moment, { t: at, closed: false, g: 0, b: 0, amps: 0 })
       watch(moment)
       moment.t = t
