@@ -14,7 +14,7 @@ export interface DueStarts {
   readonly came: readonly boolean[]
   /** Median of start less due instant, minutes. */
   readonly offsetMinutes: number
-  /** Nine of ten starts lie within so many minutes of the due instant and that offset; at least one. */
+  /** Nine of ten starts lie within so many minutes of the due instant and that offset; no closer than the log is fine, at least one. */
   readonly spreadMinutes: number
 }
 
@@ -50,5 +50,5 @@ export function dueStarts(
     off.map((m) => Math.abs(m - offsetMinutes)),
     0.9,
   )
-  return { members, due: seen, came, offsetMinutes, spreadMinutes: Math.max(1, away) }
+  return { members, due: seen, came, offsetMinutes, spreadMinutes: Math.max(1, clock.stepMs / (2 * MINUTE_MS), away) }
 }

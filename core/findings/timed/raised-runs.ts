@@ -1,5 +1,5 @@
 import { changepointBiweight, quantile } from '../../statistics/index.ts'
-import type { Series } from '../../timeline/series.ts'
+import { type Series, usualInterval } from '../../timeline/series.ts'
 
 const MINUTE_MS = 60_000
 /** Points the segmentation may cost; longer logs are taken in means of several minutes. */
@@ -35,7 +35,7 @@ export interface RaisedRuns {
   readonly runs: readonly RaisedRun[]
   /** Robust deviation of a step that is none, mA. */
   readonly noiseMa: number
-  /** Length of a point, ms. */
+  /** Length of a point, ms: a minute, or the logger's interval when that is longer. */
   readonly stepMs: number
   /** Stretches without a gap, [from, to) each. */
   readonly watched: readonly (readonly [number, number])[]
@@ -62,7 +62,8 @@ interface Rise {
  */
 export function raisedRuns(remainder: Series): RaisedRuns {
   const width = Math.max(1, Math.ceil(remainder.t.length / MOST_POINTS))
-  const stepMs = width * MINUTE_MS
+  const usual = usualInterval(remainder)
+  const stepMs = width * Math.max(MINUTE_MS, Number.isNaN(usual) ? 0 : usual)
   const points = width === 1 ? remainder : coarser(remainder, stepMs)
   const stretches = stretchesOf(points.t, GAP_POINTS * stepMs)
   const noiseMa = stepNoise(points.v, stretches)

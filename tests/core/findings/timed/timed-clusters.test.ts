@@ -115,6 +115,38 @@ describe('timedClusters', () => {
     expect(timedStepOf(found!).hours).toBeCloseTo(13.3, 1)
   })
 
+  it('keeps to the clock on the wall through a change of the hour', () => {
+    // Vienna: 03:10 local is 01:10 UTC in summer and 02:10 UTC from 2026-10-25 on
+    const from = Date.UTC(2026, 9, 18)
+    const starts = Array.from({ length: 14 }, (_, d) => START + d * DAY + (d < 7 ? 70 : 130) * MINUTE)
+    const made = madeRemainder({ days: 14, timers: [{ ma: 1.5, minutes: 30, starts }] }, 10)
+    const remainder = { t: made.t.map((t) => t - START + from), v: made.v }
+    const [found] = timedClusters(timelineOf({ from, days: 14, zone: 'Europe/Vienna' }), remainder)
+    expect(timedStepOf(found!)).toMatchObject({
+      schedule: 'clock',
+      localTime: expect.stringMatching(/^03:(09|10|11)$/),
+    })
+  })
+
+  it('works on a logger that reads every five minutes, as far as that goes', () => {
+    const made = madeRemainder(
+      { days: 21, timers: [{ ma: 2, minutes: 60, starts: daily(21, 3, 1) }], people: true },
+      11,
+    )
+    const keep = (_: number, i: number): boolean => i % 5 === 0
+    const [found, ...others] = timedClusters(timelineOf({ days: 21 }), {
+      t: made.t.filter(keep),
+      v: made.v.filter(keep),
+    })
+    expect(others).toEqual([])
+    expect(timedStepOf(found!)).toMatchObject({ schedule: 'clock', localTime: expect.stringMatching(/^0(2:5|3:0)\d$/) })
+    expect(found!.schedule.spreadMinutes).toBeGreaterThanOrEqual(2.5)
+  })
+
+  it('says nothing of four runs', () => {
+    expect(clustersOf({ days: 4, timers: [{ ma: 2, minutes: 30, starts: daily(4, 3, 0) }] }, 12)).toEqual([])
+  })
+
   it('says so when clock and sun cannot be told apart', () => {
     // round the summer solstice sunset moves by two minutes in ten days, less than this switch errs
     const from = Date.UTC(2026, 5, 15)
