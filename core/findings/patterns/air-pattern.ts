@@ -10,9 +10,9 @@ import { type Hourly, hourly, withoutDaily, withoutDrift } from './hourly.ts'
 import { DRIFT_HOURS } from './level-of.ts'
 import { type LevelResponse, levelResponse } from './level-response.ts'
 import { coincidence, onsets } from './onsets.ts'
+import type { PatternTrips } from './pattern-trips.ts'
 import { ratePatternByHour } from './rate-by-hour.ts'
 import type { Preferred } from './rate-pattern.ts'
-import { TOO_FEW } from './too-few.ts'
 import { withLevel } from './with-level.ts'
 
 /** Air this near its dew point wets what is colder, K. */
@@ -22,12 +22,12 @@ const QUIET_HOURS = 24
 const WINDOWS = [24, 48].map((window) => ({ window, lag: 0 }))
 
 /** Do trips prefer cold or warm hours, and does the leakage follow the temperature. */
-export function temperaturePattern(timeline: Timeline, trips: readonly number[] | null, level: Hourly | null): Pattern {
+export function temperaturePattern(timeline: Timeline, { trips, tooFew }: PatternTrips, level: Hourly | null): Pattern {
   const { series, refused } = sensible(timeline.temperature, { name: 'temperature', low: -60, high: 70 })
   if (series === null) return { verdict: refused, p: null }
   const response = follows(timeline, level, series, 5)
   const driver = { words: '5 °C more', spell: 'a cold spell' }
-  if (trips === null) return withLevel(TOO_FEW, null, response, driver)
+  if (trips === null) return withLevel(tooFew, null, response, driver)
   const cold = cutOf(series, 0.25)
   const rates = ratePatternByHour(
     timeline,
@@ -43,14 +43,14 @@ export function temperaturePattern(timeline: Timeline, trips: readonly number[] 
  * Do trips prefer damp air: high relative humidity, a high dew point, or air near its dew point (Magnus formula, Alduchov &
  * Eskridge 1996; both need a temperature too); and does the leakage follow the humidity.
  */
-export function humidityPattern(timeline: Timeline, trips: readonly number[] | null, level: Hourly | null): Pattern {
+export function humidityPattern(timeline: Timeline, { trips, tooFew }: PatternTrips, level: Hourly | null): Pattern {
   const { series: humidity, refused } = sensible(timeline.humidity, { name: 'humidity', low: 0, high: 105 })
   if (humidity === null) return { verdict: refused, p: null }
   const temperature = sensible(timeline.temperature, { name: 'temperature', low: -60, high: 70 }).series
   const dew = temperature === null ? null : dewPoints(temperature, humidity)
   const response = follows(timeline, level, humidity, 10)
   const driver = { words: '10 % more humidity', spell: 'a damp spell' }
-  if (trips === null) return withLevel(TOO_FEW, null, response, driver)
+  if (trips === null) return withLevel(tooFew, null, response, driver)
   const damp = cutOf(humidity, 0.9)
   const sets = [
     preferred(humidity, cutOf(humidity, 0.75), true, '% of humidity', 'there was'),

@@ -9,14 +9,13 @@ import { thinned } from '../windows/held.ts'
 import { figure, rounded } from '../words.ts'
 import { preferred } from './air-pattern.ts'
 import { sensible } from './channel-sense.ts'
+import { currentChanges } from './current-changes.ts'
 import type { LevelsOfPatterns } from './levels-of-patterns.ts'
+import type { PatternTrips } from './pattern-trips.ts'
 import { ratePatternByHour } from './rate-by-hour.ts'
-import { TOO_FEW } from './too-few.ts'
 
 const MINUTE_MS = 60_000
-const APART_MINUTES = 5
-/** Changes of at least so many amperes tell; so few of them do not, so many are enough. */
-const LEAST_AMPS = 1
+/** So few changes of the current do not tell, so many are enough. */
 const LEAST_CHANGES = 12
 const MOST_CHANGES = 400
 
@@ -25,7 +24,7 @@ const MOST_CHANGES = 400
  * changes on those of the current, across all switching, and whether one law holds for every load (`followsCurrent`); and do trips prefer heavy load: rates above two quantiles of the
  * current, the current before trips beside that of the rest.
  */
-export function loadPattern(timeline: Timeline, trips: readonly number[] | null, levels: LevelsOfPatterns): Pattern {
+export function loadPattern(timeline: Timeline, { trips, tooFew }: PatternTrips, levels: LevelsOfPatterns): Pattern {
   const name = 'load current of the group'
   const { series, refused } = sensible(timeline.loadCurrent, { name, low: 0, high: 10_000 })
   if (series === null) return { verdict: refused, p: null }
@@ -33,7 +32,7 @@ export function loadPattern(timeline: Timeline, trips: readonly number[] | null,
   const slope = levels.minutes === null ? null : slopeOf(levels.minutes, amps)
   const said = slope === null ? '' : slopeWords(slope, levels.followsCurrent)
   const figures = slope === null ? {} : slopeFigures(slope)
-  if (trips === null) return { ...TOO_FEW, verdict: `${TOO_FEW.verdict}${said}`, ...figures }
+  if (trips === null) return { ...tooFew, verdict: `${tooFew.verdict}${said}`, ...figures }
   const sample = thinned(series.v, 5_000)
   const sets = [0.75, 0.9].map((share) =>
     preferred(series, quantile(sample, share), true, 'A', 'the load current of the group was'),
@@ -51,28 +50,13 @@ interface Slope {
 }
 
 function slopeOf(minutes: Series, amps: Series): Slope | null {
-  const xs: number[] = []
-  const ys: number[] = []
-  for (let i = APART_MINUTES; i < minutes.t.length; i += APART_MINUTES) {
-    const [now, then] = [minutes.t[i]!, minutes.t[i - APART_MINUTES]!]
-    if (now - then > 3 * APART_MINUTES * MINUTE_MS) continue
-    const change = atMinute(amps, now) - atMinute(amps, then)
-    if (!(Math.abs(change) >= LEAST_AMPS)) continue
-    xs.push(change)
-    ys.push(minutes.v[i]! - minutes.v[i - APART_MINUTES]!)
-  }
-  if (xs.length < LEAST_CHANGES) return null
-  const x = thinned(Float64Array.from(xs), MOST_CHANGES)
-  const y = thinned(Float64Array.from(ys), MOST_CHANGES)
+  const changes = currentChanges(minutes, amps)
+  if (changes.amps.length < LEAST_CHANGES) return null
+  const [x, y] = [thinned(changes.amps, MOST_CHANGES), thinned(changes.ma, MOST_CHANGES)]
   const line = theilSen(x, y, { confidence: 0.9 })
-  const correlation = laggedCorrelation(xs, ys, 0)
+  const correlation = laggedCorrelation(changes.amps, changes.ma, 0)
   if (line.low === null || line.high === null || correlation === null) return null
-  return { maPerA: line.slope, low: line.low, high: line.high, correlation, changes: xs.length }
-}
-
-function atMinute({ t, v }: Series, ms: number): number {
-  const i = lowerBound(t, ms)
-  return i < t.length && t[i] === ms ? v[i]! : Number.NaN
+  return { maPerA: line.slope, low: line.low, high: line.high, correlation, changes: changes.amps.length }
 }
 
 function slopeWords({ maPerA, low, high }: Slope, followsCurrent: boolean | null): string {

@@ -7,8 +7,8 @@ import { sensible } from './channel-sense.ts'
 import { type Hourly, hourlySums, standingRain } from './hourly.ts'
 import { type LevelResponse, levelResponse } from './level-response.ts'
 import { coincidence, onsets } from './onsets.ts'
+import type { PatternTrips } from './pattern-trips.ts'
 import { type Preferred, ratePattern } from './rate-pattern.ts'
-import { TOO_FEW } from './too-few.ts'
 import { isResponse, withLevel } from './with-level.ts'
 
 const HOUR_MS = 3_600_000
@@ -32,12 +32,12 @@ const WINDOWS = [3, 6, 12, 24].flatMap((window) => [0, 6].map((lag) => ({ window
  * chosen by how well it foretells the level in hours held out. Where the level follows, its law alone says what is wet; else
  * four laws are tried and paid for. `level` is what no named thing accounts for.
  */
-export function rainPattern(timeline: Timeline, trips: readonly number[] | null, level: Hourly | null): Pattern {
+export function rainPattern(timeline: Timeline, { trips, tooFew }: PatternTrips, level: Hourly | null): Pattern {
   const { series: rain, refused } = sensible(timeline.rain, { name: 'rain', low: 0, high: 300 })
   if (rain === null) return { verdict: refused === 'The rain did not change.' ? dry(timeline) : refused, p: null }
   const response = level === null ? null : ofLevel(timeline, level)
   const driver = { words: '10 mm of rain still standing', spell: 'rain' }
-  if (trips === null) return withLevel(TOO_FEW, null, response, driver)
+  if (trips === null) return withLevel(tooFew, null, response, driver)
   const laws = isResponse(response)
     ? [{ halfLife: response.halfLife!, lag: response.lag }]
     : HALF_LIVES.flatMap((halfLife) => LAGS.map((lag) => ({ halfLife, lag })))

@@ -4,6 +4,8 @@ import { type Series, usualInterval } from '../../timeline/series.ts'
 const MINUTE_MS = 60_000
 /** Points the segmentation may cost; longer logs are taken in means of several minutes. */
 const MOST_POINTS = 180_000
+/** Loads come back by and by after a restart: rises so soon after the beginning of a stretch begin no run. */
+const RESTART_MS = 15 * MINUTE_MS
 /** Readings farther apart than this many points are not compared. */
 const GAP_POINTS = 3
 /** Points on each side of a place over which the noise of a step is measured. */
@@ -74,7 +76,10 @@ export function raisedRuns(remainder: Series): RaisedRuns {
   const runs: RaisedRun[] = []
   for (const [a, b] of stretches) {
     if (b - a < 2 * SIDE) continue
-    const changes = changesOf(points.t, points.v, a, b, options).filter(({ rise }) => Math.abs(rise) >= least)
+    const settled = points.t[a]! + RESTART_MS
+    const changes = changesOf(points.t, points.v, a, b, options).filter(
+      ({ at, rise }) => Math.abs(rise) >= least && (rise < 0 || at >= settled),
+    )
     runs.push(...paired(changes, points.t[b - 1]! + stepMs))
   }
   runs.sort((x, y) => x.from - y.from || x.to - y.to)

@@ -217,9 +217,14 @@ describe('patterns', () => {
     expect(patterns(withTrips([1, 50, 99, 200])).clock).toEqual({
       verdict: 'Too few trips with a known time to say.',
       p: null,
+      help: 'One trip more would do: until then let the logger stay.',
     })
     const vague = [1, 50, 99, 200, 300].map((h) => tripAt(START + h * HOUR, START + h * HOUR + 40 * MINUTE))
-    expect(patterns(timelineOf({ days: DAYS, trips: vague })).clock.p).toBeNull()
+    expect(patterns(timelineOf({ days: DAYS, trips: vague })).clock).toEqual({
+      verdict: 'Too few trips with a known time to say.',
+      p: null,
+      help: '0 of 5 trips are timed within half an hour: a logger on the tails would time the others.',
+    })
   })
 
   it('gives the same answer for the same trips', () => {
