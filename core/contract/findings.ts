@@ -139,6 +139,46 @@ export const NextStep = z.object({
   days: z.number(),
   settles: Probability.meta({ description: 'chance that the question is settled by then' }),
   text: z.string(),
+  settlesByBreaker: Probability.optional().meta({
+    description:
+      'the same when only the breakers are opened, which leaves the neutral connected; only where that differs',
+  }),
+  bits: z.number().optional().meta({ description: 'expected loss of entropy of the line-up, bits' }),
+})
+
+/** Trips per energised time before and after a remedy. */
+export const RateChange = z.object({
+  tripsBefore: z.int(),
+  hoursBefore: Hours,
+  tripsAfter: z.int(),
+  hoursAfter: Hours,
+  ratio: z.number().nullable().meta({ description: 'rate after over rate before; null where it is not finite' }),
+  low: z.number().nullable().meta({ description: '90 % limits, exact' }),
+  high: z.number().nullable(),
+  p: Probability.meta({ description: 'one-sided: chance of so few trips after it had nothing changed' }),
+})
+
+/** Standing leakage before and after a remedy, at the same hours of the day, drift taken off. */
+export const LevelChange = z.object({
+  beforeMa: Milliamps,
+  afterMa: Milliamps,
+  changeMa: Milliamps.meta({ description: 'negative: less than before' }),
+  low: Milliamps.meta({ description: '90 % limits, day by day' }),
+  high: Milliamps,
+  driftMaPerDay: z.number().nullable().meta({ description: 'drift before the remedy that was taken off; null: none' }),
+  method: z.string(),
+})
+
+/** What is known of one remedy: set against the time since the remedy before it, up to the next one. */
+export const RemedyProof = z.object({
+  remedyAt: InstantOut,
+  of: z.string().nullable(),
+  done: z.string(),
+  quietHours: Hours.meta({ description: 'energised hours without a trip at the end of its time' }),
+  confidenceFixed: Probability.nullable(),
+  rate: RateChange.nullable(),
+  level: LevelChange.nullable(),
+  text: z.string(),
 })
 
 export const Proof = z.object({
@@ -146,6 +186,52 @@ export const Proof = z.object({
   quietHours: z.number().nullable(),
   confidenceFixed: Probability.nullable(),
   hoursTo95: z.number().nullable(),
+  text: z.string(),
+  rate: RateChange.nullable().optional(),
+  level: LevelChange.nullable().optional(),
+  newCause: Reason.nullable().optional().meta({ description: 'signs that something else makes it trip since then' }),
+  remedies: z.array(RemedyProof).optional().meta({ description: 'every remedy in order of time' }),
+})
+
+/** Superposed epochs: the mean course of the leakage before trips, beside the same hours of the day without a trip. */
+export const Epochs = z.object({
+  trips: z.int().meta({ description: 'trips with a known instant and a log before it' }),
+  minutes: z.array(z.number()).meta({ description: 'time from the trip, negative; middle of each stretch' }),
+  ma: z.array(Milliamps.nullable()).meta({ description: 'mean over the trips' }),
+  low: z.array(Milliamps.nullable()).meta({
+    description: 'nine of ten such sets of times without a trip lie between low and high throughout',
+  }),
+  high: z.array(Milliamps.nullable()),
+  text: z.string(),
+  method: z.string(),
+})
+
+/** Circuits over several devices, so that the most loaded one stays least. */
+export const SpreadPlan = z.object({
+  devices: z.array(
+    z.object({ of: z.array(z.string()), ma: Milliamps, highMa: Milliamps, share: z.number().optional() }),
+  ),
+  worstMa: Milliamps.meta({ description: 'upper end of the most loaded device' }),
+  exact: z.boolean(),
+  text: z.string(),
+})
+
+export const Spread = z.object({
+  circuits: z.array(z.object({ of: z.string(), ma: Milliamps, highMa: Milliamps })),
+  unjudged: z.array(z.string()).meta({ description: 'circuits without a figure, in no plan' }),
+  unplacedMa: Milliamps.nullable().meta({ description: 'standing leakage that no circuit accounts for' }),
+  nowShare: z.number().nullable().meta({ description: 'standing leakage of the device as it is, over its rating' }),
+  advisedShare: z.number(),
+  plans: z.array(SpreadPlan).meta({ description: 'two devices, then three' }),
+  alone: z.array(
+    z.object({
+      of: z.string(),
+      ma: Milliamps,
+      share: z.number().meta({ description: 'on its own RCBO of the same rating' }),
+      restMa: Milliamps,
+      restShare: z.number(),
+    }),
+  ),
   text: z.string(),
 })
 
@@ -163,6 +249,8 @@ export const Findings = z.object({
   patterns: Patterns,
   next: z.array(NextStep),
   proof: Proof,
+  epochs: Epochs.optional(),
+  spread: Spread.optional(),
   notes: z.array(z.string()).meta({ description: 'what was missing, merged or set aside, in words' }),
 })
 
@@ -181,4 +269,10 @@ export type TimedStep = z.infer<typeof TimedStep>
 export type Patterns = z.infer<typeof Patterns>
 export type NextStep = z.infer<typeof NextStep>
 export type Proof = z.infer<typeof Proof>
+export type RateChange = z.infer<typeof RateChange>
+export type LevelChange = z.infer<typeof LevelChange>
+export type RemedyProof = z.infer<typeof RemedyProof>
+export type Epochs = z.infer<typeof Epochs>
+export type SpreadPlan = z.infer<typeof SpreadPlan>
+export type SpreadFindings = z.infer<typeof Spread>
 export type Findings = z.infer<typeof Findings>
