@@ -1,4 +1,5 @@
 import { CoreError } from '../errors.ts'
+import type { Spans } from '../timeline/spans.ts'
 import { type CauseWindow, type Marginal, marginal } from './cause-sets.ts'
 
 /** One way in which a suspect may act, with what the trips say about it. */
@@ -16,6 +17,8 @@ export interface ExposureWindow {
   /** What is spoken of: share of each trip's time inside, before leakage evidence (0, 1, or between), and hours inside. */
   readonly inside: Float64Array
   readonly insideHours: number
+  /** Energised time in which it holds, and in which that is known; absent where it is no one set of time. */
+  readonly when?: { readonly inside: Spans; readonly known: Spans }
 }
 
 /** A way in which trips of any cause may spread over the day, with what they say for it. */

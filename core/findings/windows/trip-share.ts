@@ -119,7 +119,8 @@ export function layeredWindow(
         : Float64Array.from(trips, (_, i) => layers.reduce((sum, { weight }, l) => sum + weight * shareIn(l, i), 0)),
     )
   })
-  return { key, words, prior, hoursBy, weightsBy, inside, insideHours }
+  const when = { inside: held[0] ?? NO_SPANS, known: knownHere }
+  return { key, words, prior, hoursBy, weightsBy, inside, insideHours, when }
 }
 
 /** Scales the priors of the windows that exist so that they sum to one. */
