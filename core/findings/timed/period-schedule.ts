@@ -18,6 +18,9 @@ const BIN = 0.015
 const MOST_CANDIDATES = 3
 /** Least distances in a bin and its neighbours, and how far they must stand above the bins round them: thermostats spread. */
 const LEAST_ALIKE = 3
+/** A period that holds leaves its distance in this share of its turns, or so often that it held for a while. */
+const OF_TURNS = 0.2
+const ENOUGH = 40
 const SHARP = 2
 /** Share of a turn within which a start keeps the period, and at most so many hours: a timer is no tide. */
 const TOLERANCES = [0.02, 0.05, 0.1] as const
@@ -81,7 +84,9 @@ function candidates(hours: Float64Array, longest: number): number[] {
   }
   const smooth = [...counts.keys()].flatMap((bin) => {
     const peak = within(bin, 1)
-    const isSharp = peak >= LEAST_ALIKE && peak / 3 >= SHARP * (within(bin, 10) / 21)
+    const turns = (hours.at(-1)! - hours[0]!) / Math.exp(bin * BIN)
+    const isSharp =
+      peak >= Math.max(LEAST_ALIKE, Math.min(ENOUGH, OF_TURNS * turns)) && peak / 3 >= SHARP * (within(bin, 10) / 21)
     return isSharp ? [{ bin, count: peak + counts.get(bin)! }] : []
   })
   smooth.sort((a, b) => b.count - a.count || a.bin - b.bin)
