@@ -1,6 +1,7 @@
 import { CoreError } from '../errors.ts'
 import type { Spans } from '../timeline/spans.ts'
 import { type CauseWindow, type Marginal, marginal } from './cause-sets.ts'
+import { type CauseSet, likelySets } from './likely-sets.ts'
 
 /** One way in which a suspect may act, with what the trips say about it. */
 export interface ExposureWindow {
@@ -61,6 +62,8 @@ export interface LineUp {
   readonly none: number
   /** Expected share of trips that no candidate accounts for. */
   readonly unexplained: number
+  /** What may be the case, heaviest first, without what is less likely than one in ten thousand; weights sum to 1. */
+  readonly sets: readonly CauseSet[]
 }
 
 /**
@@ -257,7 +260,17 @@ function summarise(
       logBayesFactor: logSum(single[c]!) - emptyLog,
     }
   })
-  return { standings, none: (1 - doubt) * none + doubt * priorNone, unexplained: Math.max(0, 1 - explained) }
+  return {
+    standings,
+    none: (1 - doubt) * none + doubt * priorNone,
+    unexplained: Math.max(0, 1 - explained),
+    sets: likelySets(
+      trips,
+      candidates,
+      sets.map((set) => ({ ...set, weight: Math.exp(set.logWeight - total) })),
+      { doubt, priorNone },
+    ),
+  }
 }
 
 /** ln Σ exp(xᵢ) without overflow; −∞ for an empty list. */

@@ -40,7 +40,7 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const candidates = kept.length === 0 || hours <= 0 ? [] : candidatesOf(frame, courses, measured, log)
   const weighed: LineUp =
     candidates.length === 0
-      ? { standings: [], none: 1, unexplained: 1 }
+      ? { standings: [], none: 1, unexplained: 1, sets: [] }
       : lineUp(hours, kept.length, candidates, frame.habits)
   const tested = weighed.standings.flatMap((s) => {
     const top = s.windows[0]
