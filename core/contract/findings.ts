@@ -39,8 +39,23 @@ export const Headroom = z.object({
     .nullable()
     .optional()
     .meta({ description: 'Theil-Sen slope of the level, Mann-Kendall p; null where data do not allow one' }),
-  tail: z.object({ exceedMa: z.number(), perWeek: z.number(), shape: z.number() }).nullable().optional(),
+  tail: z
+    .object({
+      exceedMa: z.number().meta({ description: 'the trip current that the tail is asked about' }),
+      perWeek: z.number().meta({ description: 'expected spells above it in a week under supply' }),
+      shape: z.number().meta({ description: 'of the generalised Pareto: below 0 a tail with an end' }),
+      low: z.number().optional().meta({ description: 'perWeek, 90 % interval' }),
+      high: z.number().optional(),
+      scale: z.number().optional().meta({ description: 'of the generalised Pareto, mA' }),
+      thresholdMa: z.number().optional().meta({ description: 'the tail is fitted above it' }),
+      spells: z.int().optional().meta({ description: 'spells above the threshold that the fit rests on' }),
+    })
+    .nullable()
+    .optional()
+    .meta({ description: 'beyond the log: null where the data are not enough to fit a tail' }),
 })
+
+const BudgetSource = z.enum(['switching', 'survey', 'channel'])
 
 export const BudgetLine = z.object({
   of: z.string(),
@@ -50,6 +65,57 @@ export const BudgetLine = z.object({
   basis: z.enum(['switching', 'survey', 'channel', 'unjudged']),
   switchings: z.int().meta({ description: 'changes of state behind the figure' }),
   note: z.string().optional(),
+  baseMa: Milliamps.optional().meta({ description: 'of a circuit: what stays while none of its known loads runs' }),
+  conductiveMa: Milliamps.optional().meta({ description: 'its own part in phase, where both parts are logged' }),
+  conductiveLow: Milliamps.optional(),
+  conductiveHigh: Milliamps.optional(),
+  capacitiveMa: Milliamps.optional().meta({ description: 'its own part a quarter period ahead' }),
+  capacitiveLow: Milliamps.optional(),
+  capacitiveHigh: Milliamps.optional(),
+  ownLow: Milliamps.optional().meta({
+    description: 'least its own current can be: magnitudes alone bound it, both parts measure it',
+  }),
+  ownHigh: Milliamps.optional().meta({ description: 'most its own current can be' }),
+  neutralStays: z
+    .boolean()
+    .optional()
+    .meta({ description: 'its device opens the line only: what leaks from its neutral is not in the figure' }),
+  fallback: z
+    .boolean()
+    .optional()
+    .meta({ description: 'from levels while on and off, without a usable switching: the weaker basis' }),
+  sources: z
+    .array(z.object({ basis: BudgetSource, ma: Milliamps, low: Milliamps, high: Milliamps }))
+    .optional()
+    .meta({ description: 'what each kind of evidence says by itself, where there are several' }),
+  disagree: z.boolean().optional().meta({ description: 'the sources differ by more than their intervals allow' }),
+})
+
+export const InsulationLine = z.object({
+  of: z.string(),
+  megohms: z.number(),
+  atLeast: z.boolean().meta({ description: 'full scale: a lower bound of MΩ, an upper bound of mA' }),
+  ma: Milliamps.nullable().meta({ description: 'U/R at the nominal voltage; null for a dead short' }),
+  withoutMegohms: z.number().nullable().meta({ description: 'resultant of all others; null where it is the only one' }),
+  flag: z.enum(['below-limit', 'investigate', 'surge-parts', 'sound']),
+  text: z.string(),
+})
+
+/** What insulation tests explain of the standing leakage. */
+export const InsulationFindings = z.object({
+  volts: z.number().meta({ description: 'nominal voltage of the supply' }),
+  resultantMegohms: z.number(),
+  atLeast: z.boolean(),
+  ma: Milliamps.nullable().meta({ description: 'conduction current of the resultant' }),
+  standingMa: Milliamps.nullable(),
+  explainedShare: z
+    .number()
+    .nullable()
+    .meta({ description: 'of the standing level, part in phase: √(level² − ma²) is missing' }),
+  capacitiveMa: Milliamps.nullable().meta({ description: 'what the tests do not show, when the rest is capacitive' }),
+  untested: z.array(z.string()).meta({ description: 'circuits without a usable test' }),
+  lines: z.array(InsulationLine),
+  text: z.string(),
 })
 
 export const Share = z.object({ of: z.string(), ma: Milliamps })
@@ -244,6 +310,7 @@ export const Findings = z.object({
   coverage: Coverage,
   headroom: Headroom,
   budget: z.array(BudgetLine),
+  insulation: InsulationFindings.nullable().optional().meta({ description: 'null without a usable insulation test' }),
   trips: z.array(TripFinding),
   suspects: z.array(Suspect),
   patterns: Patterns,
@@ -259,6 +326,8 @@ export type Coverage = z.infer<typeof Coverage>
 export type Gap = z.infer<typeof Gap>
 export type Headroom = z.infer<typeof Headroom>
 export type BudgetLine = z.infer<typeof BudgetLine>
+export type InsulationLine = z.infer<typeof InsulationLine>
+export type InsulationFindings = z.infer<typeof InsulationFindings>
 export type Share = z.infer<typeof Share>
 export type TripFinding = z.infer<typeof TripFinding>
 export type Grade = z.infer<typeof Grade>
