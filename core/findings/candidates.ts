@@ -1,6 +1,6 @@
 import type { BudgetLine, Headroom, TripFinding } from '../contract/findings.ts'
 import { usualInterval } from '../timeline/series.ts'
-import { eachSpan, spansOf } from '../timeline/spans.ts'
+import { eachSpan, NO_SPANS, spansOf } from '../timeline/spans.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import type { Candidate, ExposureWindow } from './line-up.ts'
 import type { LogView } from './log-view.ts'
@@ -24,7 +24,7 @@ import { whenWords } from './timed/timed-step.ts'
 import { clockWindows, periodWindows } from './windows/clock-windows.ts'
 import { heldToTrips } from './windows/held-to-trips.ts'
 import { withKicks } from './windows/kicks.ts'
-import { levelWindows } from './windows/level-windows.ts'
+import { levelWindows, ofOneThing } from './windows/level-windows.ts'
 import { sunWindows } from './windows/sun-windows.ts'
 import { thingWindows } from './windows/thing-windows.ts'
 import { type Frame, type Layer, layeredWindow, marked, normalised, windowOf } from './windows/trip-share.ts'
@@ -81,7 +81,8 @@ export function candidatesOf(
     const thing = timeline.things.find((t) => t.of === of)
     const candidate: Candidate = { of, odds, windows: paced }
     if (of === 'device' || of === 'unlisted') list.push({ ...candidate, alone: true })
-    else if (TIMERS.has(of)) list.push({ ...candidate, family: 'timer' })
+    else if (TIMERS.has(of)) list.push({ ...candidate, family: 'timer', ownHours: true })
+    else if (of === 'load-current' && log.followsCurrent === true) list.push({ ...candidate, alone: true })
     else if (thing?.kind === 'load') list.push({ ...candidate, partOf: `circuit:${thing.circuit}` })
     else list.push(candidate)
   }
@@ -92,7 +93,9 @@ export function candidatesOf(
   const laws = dryings(frame, log.unexplained?.remainder ?? null)
   const rain = rainOdds(timeline, log, laws)
   const wet = wetTime(rain, laws)
-  const level = levelWindows(frame, log, wet)
+  const level = levelWindows(frame, log, ofOneThing(log, wet))
+  // a device that opens too soon does so whoever made the level high
+  const anyLevel = levelWindows(frame, log, NO_SPANS)
   const unlisted = log.timed.some((t) => timedFactor(log, t) >= GUILTY_LOOK)
     ? []
     : unlistedWindows(frame, log, wet !== null)
@@ -111,10 +114,10 @@ export function candidatesOf(
     add(kind, ODDS[kind] * (1 + weight), 'local', all)
   }
   add('load-current', loadCurrentOdds(log), 'local', loadCurrentWindows(frame))
-  if (tooSensitive) add('device', BAD_DEVICE, 'local', [...scaled(level, 0.5), ...always(frame, 'at any time', 0.5)])
+  if (tooSensitive) add('device', BAD_DEVICE, 'local', [...scaled(anyLevel, 0.5), ...always(frame, 'at any time', 0.5)])
   else {
     add('standing', standingOdds(log, measured.headroom), 'local', level)
-    if (mayBeTooSensitive(timeline, measured)) add('device', ODDS.device, 'local', level)
+    if (mayBeTooSensitive(timeline, measured)) add('device', ODDS.device, 'local', anyLevel)
   }
   add('supply', ODDS.supply, 'supply', supplyWindows(frame))
   const irregular = unlisted.length === 0 ? 1 : isAbnormal(log) ? ABNORMAL : 4

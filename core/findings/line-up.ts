@@ -35,6 +35,8 @@ export interface Candidate {
   /** Prior odds of being a cause. */
   readonly odds: number
   readonly windows: readonly ExposureWindow[]
+  /** Keeps hours of its own: what people do over the day does not bear on it. */
+  readonly ownHours?: boolean
   /** It explains all trips or none: never in a set with another. */
   readonly alone?: boolean
   /** Suspects of one family are the same thing under several names: never two of them in one set. */
@@ -99,7 +101,7 @@ interface Weighed {
  * Bayesian variable selection over sets of at most three causes of a point process: each suspect adds a gamma-
  * distributed intensity while its exposure holds, windows are averaged over, sets without hope are left out
  * (Occam's window: Madigan & Raftery 1994). `hours` is energised time, `trips` their number, `paces` the habits under which
- * exposures were measured, averaged over. Independent of the order of trips and candidates up to rounding. Cost: windows ×
+ * exposures were measured, the first of them a flat day; averaged over. Independent of the order of trips and candidates up to rounding. Cost: windows ×
  * trips² and a bounded number of sets.
  *
  * @throws {CoreError} out_of_range without time, unequal_lengths when a window does not weigh every trip
@@ -122,7 +124,8 @@ export function lineUp(
   const byPace: number[][] = paces.map(() => [])
   let asked = paces.map((_, k) => k)
   const add = (members: readonly number[], windows: readonly ExposureWindow[]): number => {
-    const { log, expected, each } = overPaces(hours, trips, windows, paces, asked)
+    const ownHours = members.some((c) => candidates[c]!.ownHours === true)
+    const { log, expected, each } = overPaces(hours, trips, windows, ownHours ? EVEN : paces, ownHours ? [0] : asked)
     let logWeight = log + (members.length === 0 ? Math.log(NO_CAUSE) : (members.length - 1) * Math.log(EXTRA_CAUSE))
     for (const c of members) logWeight += Math.log(candidates[c]!.odds)
     for (const w of windows) logWeight += Math.log(w.prior)

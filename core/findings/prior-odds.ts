@@ -70,7 +70,7 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
   // where the usual level is near the trip current anyway, what a sound appliance leaks is the last step, not the cause
   const near = log.usualShare !== null && log.usualShare >= NEAR
   const small = near && lift !== undefined && lift.topMa < OUTSIZED_MA ? 0.02 : 1
-  return odds * liftFactor(lift) * small * (log.followsCurrent === true ? 0.02 : 1)
+  return odds * liftFactor(lift) * small * (log.followsCurrent === true ? 0.002 : 1)
 }
 
 function liftFactor(lift: Lift | undefined): number {

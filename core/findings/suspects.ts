@@ -10,8 +10,10 @@ import { type LogView, logView } from './log-view.ts'
 import { type Preference, preferences } from './preference.ts'
 import { ODDS } from './prior-odds.ts'
 import { notedReason, reasonsOf } from './reasons.ts'
+import { speakingCourse } from './speaking-course.ts'
 import { clockText } from './windows/clock-windows.ts'
 import { habitsOf } from './windows/habits.ts'
+import { highTime } from './windows/high-time.ts'
 import { kicksOf } from './windows/kicks.ts'
 import { type Frame, HOUR_MS } from './windows/trip-share.ts'
 import { nameOf, rounded, sentence } from './words.ts'
@@ -34,9 +36,10 @@ export interface Weighed {
 export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const hours = totalMs(timeline.energised) / HOUR_MS
   const kept = episodes(timeline.trips)
-  const frame: Frame = { timeline, hours, trips: kept, habits: habitsOf(timeline, kept), kicks: kicksOf(timeline) }
   const log = logView(timeline, measured.budget, measured.profiles, measured.headroom)
-  const courses = kept.map((trip) => measured.trips[timeline.trips.indexOf(trip)]?.course ?? 'unseen')
+  const habits = habitsOf(timeline, kept)
+  const frame: Frame = { timeline, hours, trips: kept, habits, kicks: kicksOf(timeline), high: highTime(log.minutes) }
+  const courses = kept.map((trip) => speakingCourse(timeline, trip, measured, log))
   const candidates = kept.length === 0 || hours <= 0 ? [] : candidatesOf(frame, courses, measured, log)
   const weighed: LineUp =
     candidates.length === 0

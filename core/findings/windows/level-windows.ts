@@ -19,15 +19,13 @@ const LEAST_LEFT = 0.5
 
 /**
  * Hours in which the standing leakage was high, as it stood one or five minutes earlier, and high by many together: the
- * time in which one load, rain (`wet`, where the leakage rises with it) or something unlisted alone lifts it far is theirs
- * and left out. Priors sum to one at most.
+ * time that is somebody's (`others`) is left out. Priors sum to one at most.
  */
-export function levelWindows(frame: Frame, log: LogView, wet: Spans | null): ExposureWindow[] {
+export function levelWindows(frame: Frame, log: LogView, others: Spans): ExposureWindow[] {
   const { minutes } = log
   if (minutes === null || minutes.t.length < 100) return []
   const sample = thinned(minutes.v, 20_000)
   const levels = CUTS.map((q) => quantile(sample, q))
-  const others = ofOneThing(log, wet)
   const windows: ExposureWindow[] = []
   const prior = 1 / (LATE_MINUTES.length * (CUTS.length + STEEPNESS.length))
   for (const late of LATE_MINUTES) {
@@ -55,8 +53,8 @@ export function levelWindows(frame: Frame, log: LogView, wet: Spans | null): Exp
   return windows
 }
 
-/** Time in which one thing alone makes the level high. */
-function ofOneThing(log: LogView, wet: Spans | null): Spans {
+/** Time in which one load, rain (`wet`, where the leakage rises with it) or something unlisted alone makes the level high. */
+export function ofOneThing(log: LogView, wet: Spans | null): Spans {
   const timed = log.timed.filter(({ heightMa }) => heightMa > OUTSIZED_MA).map(({ spans }) => spans)
   return [log.outsized, log.unexplained?.excursions ?? NO_SPANS, wet ?? NO_SPANS, ...timed].reduce(union, NO_SPANS)
 }

@@ -16,6 +16,7 @@ const MOSTLY_AFTER_ON = [1, 3, 10] as const
 const TIMES = [8, 50] as const
 const MOSTLY = 0.04
 const KICKED = 0.05
+const HIGH = 0.03
 const AFTER_OFF = [[10, 0.04]] as const
 const LATE = [
   [10, 0.05],
@@ -64,6 +65,16 @@ export function thingWindows(frame: Frame, { thing, blind }: HeldThing): Exposur
       const kick: Layer = { inside: on, within: frame.kicks, weight: times - 1, fromStart: true }
       const words = `${whileOn}, mostly as something came on`
       windows.push(layeredWindow(frame, `on-kick-${times}`, words, KICKED, [run, kick], known, blind))
+    }
+    // what others leak at the time brings it the nearer to the trip current
+    if (frame.high.length > 0) {
+      for (const times of TIMES) {
+        const high: Layer = { inside: on, within: frame.high, weight: times - 1, fromStart: true, gated: true }
+        const early: Layer = { ...high, inside: started.get(3)! }
+        const words = `${whileOn}, mostly while the rest leaked much`
+        windows.push(layeredWindow(frame, `on-high-${times}`, words, HIGH, [run, high], known, blind))
+        windows.push(layeredWindow(frame, `on-high-early-${times}`, words, HIGH, [run, early], known, blind))
+      }
     }
     for (const [minutes, prior] of LATE) {
       const inside = subtract(on, after(true, minutes))

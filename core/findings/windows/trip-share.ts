@@ -17,14 +17,17 @@ export interface Frame {
   readonly habits: readonly Habit[]
   /** The minute after every known start of anything. */
   readonly kicks: Spans
+  /** Time in which the leakage stood in its upper fifth some minutes ago; empty without a log. */
+  readonly high: Spans
 }
 
 /** One part of an exposure, and how much more likely a trip is in it. */
 export interface Layer {
   readonly inside: Spans
   readonly weight: number
-  /** Only there, when given. */
+  /** Only there, when given; a start that nobody read counts only there as well when `gated`. */
   readonly within?: Spans
+  readonly gated?: boolean
   /** Whether it holds the beginning of a run, which a state logger may not have read before a trip cut it short. */
   readonly fromStart?: boolean
 }
@@ -104,7 +107,9 @@ export function layeredWindow(
     const fractions = held.map((spans) => habit.hoursOf(spans) / all)
     const started = habit.hoursOf(fresh) / all
     const shareIn = (l: number, i: number): number => {
-      const unread = layers[l]!.fromStart === true && blind?.unread[i] === 1 ? started : 0
+      const { fromStart, gated, within = NO_SPANS } = layers[l]!
+      const isUnread = fromStart === true && blind?.unread[i] === 1
+      const unread = isUnread && (gated !== true || contains(within, trips[i]!.from - 1)) ? started : 0
       return Math.min(1, shares[l]![i]! + unread + unknown[i]! * fractions[l]!)
     }
     hoursBy.push(hours * layers.reduce((sum, { weight }, l) => sum + weight * fractions[l]!, 0))

@@ -20,7 +20,6 @@ interface LoadKind {
   readonly logger?: (logger: Logger, ground: Ground, random: Draws) => Logger
   /** What of the culprit is changed; by default it is listed and monitored. */
   readonly culprit?: Partial<LoadPlan>
-  readonly answers?: readonly string[]
 }
 
 /** A known load leaks in one way or another; its runs are on record unless the kind says otherwise. */
@@ -33,6 +32,8 @@ function loadScenario(seed: number, wanted: LoadKind): Simulated {
   const needed = neededMa(ground)
   const [least, most] = wanted.trips ?? [5, 14]
   const culprit = `load:${load.ref}`
+  const place = `circuit:${ground.installation.rcds[0]!.circuits[circuit]!.ref}`
+  const answers = wanted.culprit?.listed === false ? ['unlisted', 'none', place] : [culprit]
   const planAt = (strength: number): Plan => {
     const fault = drawFault(wanted.fault, strength * needed, seed)
     const bad = { ...load, monitored: true, ...wanted.culprit, fault }
@@ -40,7 +41,7 @@ function loadScenario(seed: number, wanted: LoadKind): Simulated {
       ...ground,
       installation: withLoad(ground.installation, bad, circuit),
       people: { ...ground.people, suspects: ground.people.suspects.filter((of) => of !== culprit) },
-      truth: { rcd: 'A', kind: wanted.kind, causes: [culprit], answers: wanted.answers ?? [culprit] },
+      truth: { rcd: 'A', kind: wanted.kind, causes: [culprit], answers },
     }
   }
   return tuned(planAt, least, most)
@@ -96,13 +97,12 @@ export function wrongClockLogger(seed: number): Simulated {
   })
 }
 
-/** The load that leaks stands on no sheet. */
+/** The load that leaks stands on no sheet; its circuit may be named for it. */
 export function unmonitored(seed: number): Simulated {
   return loadScenario(seed, {
     kind: 'unmonitored',
     fault: 'when-on',
     culprit: { listed: false, monitored: false },
-    answers: ['unlisted', 'none'],
   })
 }
 

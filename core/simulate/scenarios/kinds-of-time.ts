@@ -23,6 +23,7 @@ function timeScenario(seed: number, wanted: TimeKind): Simulated {
   const ground = drawGround(seed, { days: wanted.days })
   const needed = neededMa(ground)
   const circuit = random.integer(ground.installation.rcds[0]!.circuits.length)
+  const place = `circuit:${ground.installation.rcds[0]!.circuits[circuit]!.ref}`
   const amps = random.between(0.5, 6)
   const on = { g: random.between(0.05, 0.3), b: random.between(0.05, 0.6) }
   return tuned(
@@ -41,7 +42,7 @@ function timeScenario(seed: number, wanted: TimeKind): Simulated {
       return {
         ...ground,
         installation: withLoad(ground.installation, load, circuit),
-        truth: { rcd: 'A', kind: wanted.kind, causes: wanted.causes, answers: wanted.answers },
+        truth: { rcd: 'A', kind: wanted.kind, causes: wanted.causes, answers: [...wanted.answers, place] },
       }
     },
     ...wanted.trips,
