@@ -1,7 +1,7 @@
 import type { BudgetLine, Headroom, TripFinding } from '../contract/findings.ts'
 import { usualInterval } from '../timeline/series.ts'
 import { eachSpan, NO_SPANS, spansOf } from '../timeline/spans.ts'
-import type { Timeline } from '../timeline/timeline.ts'
+import type { Thing, Timeline } from '../timeline/timeline.ts'
 import type { Candidate, ExposureWindow } from './line-up.ts'
 import type { LogView } from './log-view.ts'
 import { type CauseKind, courseRatio, type Pace } from './marks.ts'
@@ -10,6 +10,7 @@ import {
   GUILTY_LOOK,
   innocence,
   isAbnormal,
+  liftFactor,
   loadCurrentOdds,
   ODDS,
   rainOdds,
@@ -26,7 +27,7 @@ import { heldToTrips } from './windows/held-to-trips.ts'
 import { withKicks } from './windows/kicks.ts'
 import { levelWindows, ofOneThing } from './windows/level-windows.ts'
 import { sunWindows } from './windows/sun-windows.ts'
-import { thingWindows } from './windows/thing-windows.ts'
+import { type Partner, thingWindows } from './windows/thing-windows.ts'
 import { type Frame, type Layer, layeredWindow, marked, normalised, windowOf } from './windows/trip-share.ts'
 import { dryings, loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
 
@@ -34,6 +35,9 @@ import { dryings, loadCurrentWindows, rainWindows, temperatureWindows } from './
 const UNDER_A_BAD_DEVICE = 0.001
 /** Odds of a device that a test, or its own trips, showed to open too soon: measured, not guessed. */
 const BAD_DEVICE = 600
+
+/** What takes up headroom worth naming, mA. */
+const PARTNER_MA = 0.8
 
 /** A load that runs by itself mostly fires as it starts: in its first minutes, so many times likelier. */
 const EARLY_MS = 6 * 60_000
@@ -87,7 +91,10 @@ export function candidatesOf(
     else list.push(candidate)
   }
   const byThing = new Map(
-    timeline.things.map((thing) => [thing.of, thingWindows(frame, heldToTrips(thing, frame.trips))]),
+    timeline.things.map((thing) => [
+      thing.of,
+      thingWindows(frame, heldToTrips(thing, frame.trips), partnersOf(timeline, thing, log)),
+    ]),
   )
   const isJudged = (of: string): boolean => (byThing.get(of)?.length ?? 0) > 0
   const laws = dryings(frame, log.unexplained?.remainder ?? null)
@@ -126,6 +133,17 @@ export function candidatesOf(
     ...always(frame, 'at any time', unlisted.length > 0 ? 0.5 : 1),
   ])
   return list
+}
+
+/**
+ * Whoever else takes up much headroom while it runs, for a thing that by its leakage may well fire trips: the last milliamp is its,
+ * the others only make it the last.
+ */
+function partnersOf(timeline: Timeline, thing: Thing, log: LogView): Partner[] {
+  if (liftFactor(log.lifts.get(thing.of)) < GUILTY_LOOK) return []
+  return timeline.things.flatMap(({ of, label, state }) =>
+    of !== thing.of && (log.lifts.get(of)?.usualMa ?? 0) >= PARTNER_MA ? [{ of, label, on: state.on }] : [],
+  )
 }
 
 /** Whether a schedule that the log shows may be of this kind: one that clock and sun explain alike is of both. */

@@ -73,7 +73,8 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
   return odds * liftFactor(lift) * small * (log.followsCurrent === true ? 0.002 : 1)
 }
 
-function liftFactor(lift: Lift | undefined): number {
+/** How much likelier a cause what its runs do to the level makes a thing; 1 where nothing is known. */
+export function liftFactor(lift: Lift | undefined): number {
   if (lift === undefined) return 1
   const found = REACH.find(({ usual, top }) => lift.usual >= usual && lift.top >= top)
   const factor = found?.factor ?? NO_REACH

@@ -17,6 +17,9 @@ const TIMES = [8, 50] as const
 const MOSTLY = 0.04
 const KICKED = 0.05
 const HIGH = 0.03
+/** Its start while another thing takes up headroom: so many times likelier; the prior is shared by the others. */
+const WITH_TIMES = 50
+const WITH = 0.1
 const AFTER_OFF = [[10, 0.04]] as const
 const LATE = [
   [10, 0.05],
@@ -24,12 +27,23 @@ const LATE = [
 ] as const
 const WHILE_ON = 0.24
 
+/** Another thing that takes up headroom while it runs. */
+export interface Partner {
+  readonly of: string
+  readonly label: string
+  readonly on: Spans
+}
+
 /**
  * The ways in which a circuit or load may fire trips: while it is on, within minutes of its start or its end, mostly
- * then, or only once it has run for a while (domain.md, mechanisms). Empty when its state never changed while it was
+ * then, or only once it has run for a while (domain.md, mechanisms); also its start while one of the `partners` takes up headroom. Empty when its state never changed while it was
  * known.
  */
-export function thingWindows(frame: Frame, { thing, blind }: HeldThing): ExposureWindow[] {
+export function thingWindows(
+  frame: Frame,
+  { thing, blind }: HeldThing,
+  partners: readonly Partner[] = [],
+): ExposureWindow[] {
   const { on, off } = thing.state
   const known = knownOf(thing.state)
   const { from, to } = frame.timeline
@@ -75,6 +89,23 @@ export function thingWindows(frame: Frame, { thing, blind }: HeldThing): Exposur
         windows.push(layeredWindow(frame, `on-high-${times}`, words, HIGH, [run, high], known, blind))
         windows.push(layeredWindow(frame, `on-high-early-${times}`, words, HIGH, [run, early], known, blind))
       }
+    }
+    for (const partner of partners) {
+      const early = (minutes: number): Layer => ({
+        inside: started.get(minutes)!,
+        within: partner.on,
+        weight: WITH_TIMES,
+        fromStart: true,
+        gated: true,
+      })
+      const words = `as it started while ${partner.label} ran`
+      const prior = WITH / (3 * partners.length)
+      const key = `with-${partner.of}`
+      windows.push(
+        layeredWindow(frame, key, words, prior, [early(1)], known, blind),
+        layeredWindow(frame, `${key}-1`, `${whileOn}, mostly ${words}`, prior, [run, early(1)], known, blind),
+        layeredWindow(frame, `${key}-3`, `${whileOn}, mostly ${words}`, prior, [run, early(3)], known, blind),
+      )
     }
     for (const [minutes, prior] of LATE) {
       const inside = subtract(on, after(true, minutes))

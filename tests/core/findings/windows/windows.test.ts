@@ -7,6 +7,7 @@ import { sunWindows } from '../../../../core/findings/windows/sun-windows.ts'
 import { thingWindows } from '../../../../core/findings/windows/thing-windows.ts'
 import type { Frame } from '../../../../core/findings/windows/trip-share.ts'
 import { antecedent, dryings, rainWindows } from '../../../../core/findings/windows/weather-windows.ts'
+import { spansOf } from '../../../../core/timeline/spans.ts'
 import { sunTimes } from '../../../../core/timeline/sun.ts'
 import type { Thing, Timeline } from '../../../../core/timeline/timeline.ts'
 import { HOUR, loadOn, MINUTE, START, timelineOf, tripAt } from '../timeline-of.ts'
@@ -17,6 +18,7 @@ const frameOf = (timeline: Timeline): Frame => ({
   trips: timeline.trips.map(({ from, to }) => ({ from, to })),
   habits: habitsOf(timeline, timeline.trips),
   kicks: kicksOf(timeline),
+  high: spansOf([]),
 })
 const seen = (thing: Thing): HeldThing => ({ thing, blind: null })
 const inside = (windows: readonly { key: string; inside: Float64Array }[], key: string): number[] => [
