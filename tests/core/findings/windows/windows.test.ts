@@ -122,8 +122,8 @@ describe('habits', () => {
     const best = others.reduce((a, b) => (b.logDensity > a.logDensity ? b : a))
     expect(best.at(12 * 60)).toBeGreaterThan(1)
     expect(best.at(3 * 60)).toBeLessThan(1)
-    // ten hours of ten times the liveliness: 24 / (10 + 14 / 10)
-    expect(best.logDensity).toBeCloseTo(4 * Math.log(24 / 11.4), 8)
+    // ten hours, and fourteen of a twentieth of their liveliness: 24 / (10 + 14 / 20)
+    expect(best.logDensity).toBeCloseTo(4 * Math.log(24 / 10.7), 8)
   })
 })
 
