@@ -26,8 +26,14 @@ function startsDue(schedule: TimedSchedule, reach: number, { timeline, wall, sun
     }
     case 'period': {
       const { of, instant } = hours[schedule.on]
-      const count = Math.max(0, Math.ceil((of(to) - schedule.phaseHours) / schedule.hours) + 1)
-      return Array.from({ length: count }, (_, k) => instant(schedule.phaseHours + (k - 1) * schedule.hours))
+      const anew = schedule.begunAnew ?? [schedule.phaseHours]
+      return anew.flatMap((phase, i) => {
+        // the first stretch reaches back to the beginning, each ends where the next begins
+        const first = i === 0 ? -Math.ceil(phase / schedule.hours) - 1 : 0
+        const end = anew[i + 1] ?? of(to) + schedule.hours
+        const count = Math.max(0, Math.ceil((end - phase) / schedule.hours - 1e-9 - first))
+        return Array.from({ length: count }, (_, k) => instant(phase + (first + k) * schedule.hours))
+      })
     }
     default:
       return schedule satisfies never

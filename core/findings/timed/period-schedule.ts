@@ -2,7 +2,9 @@ import { binomialUpperTail } from '../../statistics/binomial.ts'
 import { isDaily } from '../windows/clock-windows.ts'
 import { dueStarts } from './due-starts.ts'
 import { LEAST_STARTS } from './gathering.ts'
+import { BIN, periodCandidates } from './period-candidates.ts'
 import type { RaisedRun } from './raised-runs.ts'
+import { renewedPeriod } from './renewed-period.ts'
 import type { Kept, RunClock } from './run-clock.ts'
 import type { PeriodSchedule } from './schedule.ts'
 
@@ -11,17 +13,6 @@ const SHORTEST = 1
 const LONGEST = 240
 /** A period must turn so often within the span. */
 const LEAST_TURNS = 4
-/** Starts so many places apart are compared: one or two in between may be missing, or be another's. */
-const MOST_LAG = 3
-/** Logarithmic width of a bin of distances. */
-const BIN = 0.015
-const MOST_CANDIDATES = 3
-/** Least distances in a bin and its neighbours, and how far they must stand above the bins round them: thermostats spread. */
-const LEAST_ALIKE = 3
-/** A period that holds leaves its distance in this share of its turns, or so often that it held for a while. */
-const OF_TURNS = 0.2
-const ENOUGH = 40
-const SHARP = 2
 /** Share of a turn within which a start keeps the period, and at most so many hours: a timer is no tide. */
 const TOLERANCES = [0.02, 0.05, 0.1] as const
 const WIDEST = 0.25
@@ -49,7 +40,7 @@ export function periodSchedule(runs: readonly RaisedRun[], clock: RunClock): Kep
     const { of } = clock.hours[on]
     const hours = Float64Array.from(runs, ({ from }) => of(from))
     const span = of(clock.timeline.to)
-    for (const first of candidates(hours, span / LEAST_TURNS)) {
+    for (const first of periodCandidates(hours, span / LEAST_TURNS)) {
       const comb = exact(hours, first, span)
       if (comb === null) continue
       const mayBeDaily = on === 'supply' && clock.outageHours > PARTING_OUTAGE
@@ -58,44 +49,12 @@ export function periodSchedule(runs: readonly RaisedRun[], clock: RunClock): Kep
       if (found !== null && (best === null || found.schedule.p < best.schedule.p)) best = found
     }
   }
-  return best
+  return best ?? renewedPeriod(runs, clock)
 }
 
 interface Comb {
   readonly period: number
   readonly phase: number
-}
-
-/** Periods that stand out among the distances of neighbouring starts, hours. */
-function candidates(hours: Float64Array, longest: number): number[] {
-  const counts = new Map<number, number>()
-  for (let lag = 1; lag <= MOST_LAG; lag++) {
-    for (let i = lag; i < hours.length; i++) {
-      const distance = hours[i]! - hours[i - lag]!
-      if (distance < SHORTEST || distance > Math.min(LONGEST, longest)) continue
-      const bin = Math.round(Math.log(distance) / BIN)
-      counts.set(bin, (counts.get(bin) ?? 0) + 1)
-    }
-  }
-  const within = (bin: number, reach: number): number => {
-    let sum = 0
-    for (let b = bin - reach; b <= bin + reach; b++) sum += counts.get(b) ?? 0
-    return sum
-  }
-  const smooth = [...counts.keys()].flatMap((bin) => {
-    const peak = within(bin, 1)
-    const turns = (hours.at(-1)! - hours[0]!) / Math.exp(bin * BIN)
-    const isSharp =
-      peak >= Math.max(LEAST_ALIKE, Math.min(ENOUGH, OF_TURNS * turns)) && peak / 3 >= SHARP * (within(bin, 10) / 21)
-    return isSharp ? [{ bin, count: peak + counts.get(bin)! }] : []
-  })
-  smooth.sort((a, b) => b.count - a.count || a.bin - b.bin)
-  const chosen: number[] = []
-  for (const { bin } of smooth) {
-    if (chosen.length === MOST_CANDIDATES) break
-    if (chosen.every((other) => Math.abs(other - bin) > 2)) chosen.push(bin)
-  }
-  return chosen.map((bin) => Math.exp(bin * BIN))
 }
 
 /** The comb near a period: greatest resultant on a fine grid, then a line through the starts on it. */

@@ -29,8 +29,10 @@ export interface PeriodSchedule extends Fit {
   readonly hours: number
   /** `supply`: a timer that stands still while the device is open. */
   readonly on: 'wall' | 'supply'
-  /** Hours from the beginning of the span, on that clock, to a start. */
+  /** Hours from the beginning of the span, on that clock, to a start (of the last stretch, where it began anew). */
   readonly phaseHours: number
+  /** Where its count began anew, as after a cut of supply that nobody noted: hours of the first start of each stretch. */
+  readonly begunAnew?: readonly number[]
 }
 
 /** A fixed time from sunset or sunrise. */

@@ -66,7 +66,12 @@ export function whenWords(schedule: TimedSchedule): string {
       return `${daysWords(schedule.days)} at ${times} ± ${spread}${doubt}`
     }
     case 'period': {
-      const still = schedule.on === 'supply' ? ' of supply (its clock stands still without)' : ''
+      const anew = (schedule.begunAnew?.length ?? 1) > 1
+      const still = anew
+        ? ' (its count began anew at times, as after a cut of supply)'
+        : schedule.on === 'supply'
+          ? ' of supply (its clock stands still without)'
+          : ''
       return `every ${figure(schedule.hours)} hours${still} ± ${spread}`
     }
     case 'sun': {

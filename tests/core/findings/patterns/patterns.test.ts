@@ -172,6 +172,24 @@ describe('patterns', () => {
     expect(found.load.verdict).toBe('The load current of the group did not change.')
   })
 
+  it('knows that the far north has no sunset in June', () => {
+    const from = Date.UTC(2026, 5, 1)
+    const sheet = { ...timelineOf({}).sheet, latitude: 78.2, longitude: 15.6 }
+    const trips = [30, 90, 200, 333, 401, 444].map((h) => tripAt(from + h * HOUR))
+    const { sun } = patterns(timelineOf({ from, days: 20, trips, sheet }))
+    expect(sun).toMatchObject({ verdict: 'No dark or light hours to compare.', p: null })
+  })
+
+  it('does not mind the supply being told in more pieces', () => {
+    const whole = withTrips(atRandom(8), air(2))
+    const cut = START + 100 * HOUR
+    const pieces = spansOf([
+      [START, cut],
+      [cut, whole.to],
+    ])
+    expect(patterns({ ...whole, energised: pieces })).toEqual(patterns(whole))
+  })
+
   it('reads the same on another zone’s clock, but for the hour it names', () => {
     const hours = Array.from({ length: 10 }, (_, d) => d * 48 + 3 + 0.1 * (d % 3))
     const [utc, tokyo] = ['UTC', 'Asia/Tokyo'].map((timeZone) =>

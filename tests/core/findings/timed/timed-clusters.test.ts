@@ -147,6 +147,20 @@ describe('timedClusters', () => {
     expect(clustersOf({ days: 4, timers: [{ ma: 2, minutes: 30, starts: daily(4, 3, 0) }] }, 12)).toEqual([])
   })
 
+  it('finds a timer that lost its count in cuts nobody noted, and when it was due since', () => {
+    const starts = [0, 1, 2].flatMap((part) => {
+      const first = [3, 163.7, 349.1][part]!
+      return every(21, 10.6, first).filter((t) => t < START + [150, 330, 504][part]! * HOUR)
+    })
+    const remainder = madeRemainder({ days: 21, timers: [{ ma: 2, minutes: 25, starts }], people: true }, 13)
+    const [found, ...others] = timedClusters(timelineOf({ days: 21 }), remainder)
+    expect(others).toEqual([])
+    expect(timedStepOf(found!).hours).toBeCloseTo(10.6, 1)
+    expect(timedStepOf(found!).text).toContain('began anew')
+    const truth = spansOf(starts.map((t) => [t, t + 25 * MINUTE] as const))
+    expect(totalMs(intersect(found!.due, truth)) / totalMs(truth)).toBeGreaterThan(0.9)
+  })
+
   it('says so when clock and sun cannot be told apart', () => {
     // round the summer solstice sunset moves by two minutes in ten days, less than this switch errs
     const from = Date.UTC(2026, 5, 15)
@@ -163,6 +177,17 @@ describe('timedClusters', () => {
     expect(timedStepOf(utc!).localTime).toMatch(/^0(2:59|3:0[01])$/)
     expect(timedStepOf(tokyo!).localTime).toMatch(/^1(1:59|2:0[01])$/)
     expect(tokyo!.spans).toEqual(utc!.spans)
+  })
+
+  it('scales with the readings, and does not mind a thing that never switches', () => {
+    const remainder = madeRemainder({ days: 14, timers: [{ ma: 1, minutes: 30, starts: daily(14, 3, 1) }] }, 14)
+    const [one] = timedClusters(timelineOf({ days: 14 }), remainder)
+    const [three] = timedClusters(timelineOf({ days: 14 }), { t: remainder.t, v: remainder.v.map((x) => 3 * x) })
+    const lamp = loadOn('lamp', [[START, START + 14 * DAY]], START, START + 14 * DAY)
+    const [beside] = timedClusters(timelineOf({ days: 14, things: [lamp] }), remainder)
+    expect(three!.heightMa).toBeCloseTo(3 * one!.heightMa, 9)
+    expect(three!.spans).toEqual(one!.spans)
+    expect(beside).toEqual(one)
   })
 
   it('has nothing to say without a log', () => {
