@@ -52,13 +52,8 @@ export function summaryOf(scores: readonly Score[]): Summary {
   const n = Math.max(1, scores.length)
   const told = scores.flatMap((score) => score.told)
   const mean = (values: readonly number[]): number => values.reduce((a, b) => a + b, 0) / Math.max(1, values.length)
-  const bins: readonly (readonly [number, number])[] = [
-    [0, 0.02],
-    [0.02, 0.2],
-    [0.2, 0.6],
-    [0.6, 0.9],
-    [0.9, 1.001],
-  ]
+  // Deciles, the last of them open at neither end.
+  const bins = Array.from({ length: 10 }, (_, k) => [k / 10, k === 9 ? 1.001 : (k + 1) / 10] as const)
   return {
     right: (100 * scores.filter((score) => score.right).length) / n,
     toTruth: mean(scores.map((score) => score.toTruth)),
