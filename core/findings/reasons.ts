@@ -3,11 +3,14 @@ import { totalMs } from '../timeline/spans.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import type { Measured } from './candidates.ts'
 import type { Preference } from './preference.ts'
+import { habitReason, ratioReason } from './preferring/habit-reason.ts'
 import { HOUR_MS } from './windows/trip-share.ts'
 import { current, figure, pValue, rounded } from './words.ts'
 
+const MOST_REASONS = 4
+
 /**
- * Up to four reasons for a suspect's place in the line-up, the weightiest first, in plain words with figures.
+ * Two to four reasons for a suspect's place in the line-up, the weightiest first, in plain words with figures.
  * `leader` is the name of the suspect that comes first, null when it is this one or nobody leads.
  */
 export function reasonsOf(
@@ -19,14 +22,19 @@ export function reasonsOf(
   leader: string | null,
 ): Reason[] {
   const reasons: Reason[] = []
-  if (preference !== undefined) reasons.push(preferenceReason(preference, grade, leader))
+  if (preference !== undefined) {
+    reasons.push(preferenceReason(preference, grade, leader))
+    const habit = habitReason(preference)
+    if (habit !== null) reasons.push(habit)
+  }
   const rise = riseReason(of, measured)
   if (rise !== null) reasons.push(rise)
   const trigger = triggerReason(of, measured)
   if (trigger !== null) reasons.push(trigger)
   const noted = notedReason(timeline, of)
   if (noted !== null) reasons.push(noted)
-  return reasons
+  if (reasons.length === 1 && preference !== undefined) reasons.push(ratioReason(preference))
+  return reasons.slice(0, MOST_REASONS)
 }
 
 function preferenceReason(p: Preference, grade: Grade, leader: string | null): Reason {
@@ -41,10 +49,10 @@ function preferenceReason(p: Preference, grade: Grade, leader: string | null): R
         ? `Only ${fell}; ${chance}.`
         : grade === 'cleared' && leader !== null
           ? `${fell} and ${chance}, but ${leader} explains the same trips better.`
-          : `${fell}; ${chance} (${pValue(p.pAdjusted)} after paying for all that was tried).`
+          : `${fell}; ${chance} (${pValue(p.pFamily ?? p.pAdjusted)} after paying for all that was tried).`
   return {
     text,
-    method: 'exact conditional test of two Poisson rates (Przyborowski & Wilenski 1940), adjusted by Holm (1979)',
+    method: `exact conditional test of two Poisson rates (Przyborowski & Wilenski 1940), adjusted by ${p.pFamily === null ? 'Holm (1979)' : 'the best of all windows under circular shifts of the trips (Westfall & Young 1993), and by Holm (1979)'}`,
     figures: {
       tripsInside: rounded(p.inside),
       trips: p.trips,
@@ -55,6 +63,7 @@ function preferenceReason(p: Preference, grade: Grade, leader: string | null): R
       ratioHigh: Number.isFinite(p.high) ? rounded(p.high) : null,
       p: rounded(p.p),
       pAdjusted: rounded(p.pAdjusted),
+      pFamily: p.pFamily === null ? null : rounded(p.pFamily),
       window: p.window.key,
       when: p.window.words,
     },

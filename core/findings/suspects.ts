@@ -45,11 +45,11 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
     candidates.length === 0
       ? { standings: [], none: 1, unexplained: 1, sets: [] }
       : lineUp(hours, kept.length, candidates, frame.habits)
-  const tested = weighed.standings.flatMap((s) => {
+  const tested = weighed.standings.flatMap((s, c) => {
     const top = s.windows[0]
-    return top === undefined ? [] : [{ of: s.of, window: top.window }]
+    return top === undefined ? [] : [{ of: s.of, window: top.window, family: candidates[c]?.windows ?? [] }]
   })
-  const prefer = new Map(preferences(Math.max(hours, 1e-9), kept.length, tested).map((p) => [p.of, p]))
+  const prefer = new Map(preferences(frame, tested).map((p) => [p.of, p]))
   const judged = weighed.standings.map((s) =>
     judgedSuspect(frame, s, prefer.get(s.of), measured, weighed.standings, log),
   )

@@ -10,7 +10,7 @@ it('exports exactly these names', () => {
     generalisedPareto hashText hodgesLehmann hodgesLehmannShift holm huberRegression kuiper laggedCorrelation
     leastSquares logChoose logEvidence logGamma logPoissonPmf logisticRegression lombScargle lombScargleFalseAlarm mad mannKendall
     mantelHaenszel mantelHaenszelExact mantelHaenszelRates meanDirection meanRanks medcouple median medianSorted
-    nnls noEventProbability paretoQuantile poissonCdf poissonPmf poissonRate poissonRateRatio poissonRateTest poissonRegression
+    nnls noEventProbability paretoQuantile poissonBinomialUpperTail poissonCdf poissonPmf poissonRate poissonRateRatio poissonRateTest poissonRegression
     poissonUpperTail predictiveCdf predictivePmf qr quantile quantileSorted quietExposure raoSpacing rateQuantile
     rayleigh rayleighDirected ruleOfThree seededRandom theilSen vonMises vonMisesKappa weightedQuantile
     weightedQuantiles`.split(/\s+/),
