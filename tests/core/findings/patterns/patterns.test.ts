@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest'
 import { patterns } from '../../../../core/findings/patterns/patterns.ts'
 import { seededRandom } from '../../../../core/statistics/random.ts'
 import { type Series, seriesOf } from '../../../../core/timeline/series.ts'
-import { clip, spansOf } from '../../../../core/timeline/spans.ts'
+import { clip, type Spans, spansOf } from '../../../../core/timeline/spans.ts'
 import { sunTimes } from '../../../../core/timeline/sun.ts'
 import type { Timeline } from '../../../../core/timeline/timeline.ts'
 import { HOUR, MINUTE, START, timelineOf, tripAt } from '../timeline-of.ts'
@@ -214,6 +214,27 @@ describe('patterns', () => {
       if (patterns(withTrips(hours, { energised: nights })).clock.p! < 0.05) alarms++
     }
     expect(alarms).toBeLessThan(7)
+  })
+
+  it('finds a period of hours in a year of trips, and none in supply that comes and goes by one', () => {
+    const random = seededRandom('year')
+    const some = Array.from({ length: 670 }, (_, k) => 13.1 * k + random.normal(0, 0.5)).filter(
+      (h) => h > 0 && random.uniform() < 0.15,
+    )
+    const year = (hours: readonly number[], energised?: Spans): Timeline =>
+      timelineOf({
+        days: 365,
+        trips: hours.map((h) => tripAt(START + Math.round(h * HOUR))),
+        ...(energised === undefined ? {} : { energised }),
+      })
+    const found = patterns(year(some)).period
+    expect(found.p).toBeLessThan(1e-6)
+    expect(Number(found.hours)).toBeCloseTo(13.1, 1)
+    // supply for four hours in every eleven, trips at random in it
+    const turns = Array.from({ length: 790 }, (_, k) => START + k * 11 * HOUR)
+    const within = turns.filter(() => random.uniform() < 0.15).map((t) => (t - START) / HOUR + 4 * random.uniform())
+    const none = patterns(year(within, spansOf(turns.map((t) => [t, t + 4 * HOUR] as const)))).period
+    expect(none.p).toBeGreaterThan(0.05)
   })
 
   it('sees trips that follow the rain', () => {
