@@ -2,7 +2,7 @@ import type { Pattern } from '../../contract/findings.ts'
 import { localClock } from '../../timeline/local-clock.ts'
 import type { Timeline } from '../../timeline/timeline.ts'
 import { clockText } from '../windows/clock-windows.ts'
-import { figure, rounded } from '../words.ts'
+import { rounded } from '../words.ts'
 import { CIRCLE_METHOD, type CircleTests, circleTests } from './circle-tests.ts'
 import { dayCircle } from './day-circle.ts'
 import { figuresOf } from './figures.ts'
@@ -35,7 +35,7 @@ export function clockPattern(tests: CircleTests, trips: readonly number[]): Patt
     const span = from === until ? `at ${from}` : `between ${from} and ${until}`
     const width = (narrow.untilMinute - narrow.fromMinute + 1_440) % 1_440
     return {
-      verdict: `${narrow.within} of ${n} trips came ${span} local time; ${figure(narrow.expected)} would by chance.`,
+      verdict: `${narrow.within} of ${n} trips came ${span} local time; ${Number(narrow.expected.toPrecision(2))} would by chance.`,
       ...figures,
       localTime: clockText(narrow.fromMinute + width / 2),
       localFrom: from,

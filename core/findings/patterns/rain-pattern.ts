@@ -1,4 +1,5 @@
 import type { Pattern } from '../../contract/findings.ts'
+import type { Series } from '../../timeline/series.ts'
 import type { Timeline } from '../../timeline/timeline.ts'
 import { heldAbove } from '../windows/held.ts'
 import { antecedent } from '../windows/weather-windows.ts'
@@ -35,7 +36,7 @@ const WINDOWS = [3, 6, 12, 24].flatMap((window) => [0, 6].map((lag) => ({ window
 export function rainPattern(timeline: Timeline, { trips, tooFew }: PatternTrips, level: Hourly | null): Pattern {
   const { series: rain, refused } = sensible(timeline.rain, { name: 'rain', low: 0, high: 300 })
   if (rain === null) return { verdict: refused === 'The rain did not change.' ? dry(timeline) : refused, p: null }
-  const response = level === null ? null : ofLevel(timeline, level)
+  const response = level === null ? null : ofLevel(timeline, rain, level)
   const driver = { words: '10 mm of rain still standing', spell: 'rain' }
   if (trips === null) return withLevel(tooFew, null, response, driver)
   const laws = isResponse(response)
@@ -51,8 +52,8 @@ export function rainPattern(timeline: Timeline, { trips, tooFew }: PatternTrips,
   return withLevel(rates, coincidence(timeline, trips, spells, WINDOWS), response, driver)
 }
 
-function ofLevel(timeline: Timeline, level: Hourly): LevelResponse | null {
-  const fallen = hourlySums(timeline.rain!, timeline.from, timeline.to)
+function ofLevel(timeline: Timeline, rain: Series, level: Hourly): LevelResponse | null {
+  const fallen = hourlySums(rain, timeline.from, timeline.to)
   return levelResponse(
     level,
     DRYINGS.flatMap((halfLife) => {

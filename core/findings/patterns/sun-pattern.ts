@@ -139,7 +139,7 @@ function whenOf(around: Around, n: number): string {
   const offsets = offsetsOf(around)
   if (narrow !== null) {
     const span = spanOf(offsets.fromMinutes!, offsets.untilMinutes!, event)
-    return `${narrow.within} of ${n} trips came ${span}; ${figure(narrow.expected)} would by chance.`
+    return `${narrow.within} of ${n} trips came ${span}; ${Number(narrow.expected.toPrecision(2))} would by chance.`
   }
   if (middle !== null) return `${n} trips gather round ${sideOf(offsets.offsetMinutes!, event)}.`
   return `${n} trips do not spread evenly round ${event}, but gather at no single time from it.`
