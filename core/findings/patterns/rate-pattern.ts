@@ -18,7 +18,7 @@ export interface Preferred {
 /**
  * Whether trips come at a higher rate inside a set of time than outside it: exact comparison of two Poisson rates over
  * known energised time, the best of several sets by its p-value after Holm's adjustment. Sets without an hour on either side are
- * passed over; with none left the verdict is `otherwise`.
+ * passed over; with none left the verdict is `otherwise`. `noun` is what is counted.
  *
  * @see Przyborowski & Wilenski (1940), Biometrika 31, 313-323; Holm (1979), Scand. J. Statist. 6, 65-70
  */
@@ -27,6 +27,7 @@ export function ratePattern(
   trips: readonly number[],
   sets: readonly Preferred[],
   otherwise: string,
+  noun = 'trip',
 ): Pattern {
   const tried = sets.flatMap((set) => {
     const known = intersect(set.known, energised)
@@ -48,7 +49,7 @@ export function ratePattern(
   const { words, hours, within, seen, test } = tried[best]!
   const expected = (seen * hours[0]) / (hours[0] + hours[1])
   const p = adjusted[best]!
-  const count = `${countOf(within, 'trip')} of ${seen} fell ${words}; ${Number(expected.toPrecision(2))} would by chance`
+  const count = `${countOf(within, noun)} of ${seen} fell ${words}; ${Number(expected.toPrecision(2))} would by chance`
   const lead = p < SPOKEN ? (within > expected ? 'More' : 'Fewer') : null
   return {
     verdict: lead === null ? `No clear preference: ${count}.` : `${lead} trips than chance: ${count}.`,

@@ -18,14 +18,16 @@ const NAMES: Readonly<Record<Weekday, string>> = {
 
 /**
  * Whether trips prefer weekends to workdays, or one day of the week: exact comparison of rates over energised time, adjusted
- * for the eight that are tried. Below 13 days no weekday comes twice, and nothing is said.
+ * for the eight that are tried. Several trips of one day count as one, for a bad day is no weekday. Below 13 days no weekday comes twice, and nothing is said.
  */
 export function weekdayPattern(timeline: Timeline, trips: readonly number[]): Pattern {
   const { from, to } = timeline
   if (to - from < LEAST_DAYS * DAY_MS) {
     return { verdict: 'Under two weeks do not tell weekdays apart: let the logger stay longer.', p: null }
   }
-  const days = localClock(timeline.sheet.timeZone).days(from, to)
+  const clock = localClock(timeline.sheet.timeZone)
+  const days = clock.days(from, to)
+  const firsts = trips.filter((t, i) => i === 0 || clock.dayNumber(t) !== clock.dayNumber(trips[i - 1]!))
   const known = spansOf([[from, to]])
   const on = (wanted: readonly Weekday[]): Spans =>
     spansOf(days.filter(({ weekday }) => wanted.includes(weekday)).map((day) => [day.from, day.to] as const))
@@ -33,5 +35,5 @@ export function weekdayPattern(timeline: Timeline, trips: readonly number[]): Pa
     { words: 'on Saturdays and Sundays', inside: on(['sat', 'sun']), known },
     ...WEEKDAYS.map((day) => ({ words: NAMES[day], inside: on([day]), known })),
   ]
-  return ratePattern(timeline.energised, trips, sets, 'No workdays and weekends to compare.')
+  return ratePattern(timeline.energised, firsts, sets, 'No workdays and weekends to compare.', 'trip day')
 }
