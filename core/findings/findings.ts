@@ -49,7 +49,14 @@ export function findings(evidence: Evidence): Findings {
       ...patterns(timeline, { ...log, remainder: log.unexplained?.remainder ?? log.minutes }),
       timedSteps: log.timed.map(timedStepOf),
     },
-    next: nextSteps(timeline, hours, weighed.suspects),
+    next: nextSteps(timeline, hours, {
+      suspects: weighed.suspects,
+      sets: weighed.sets,
+      windows: weighed.windows,
+      trips: weighed.frame.trips.length,
+      budget: lines,
+      standingMa: room.standingMa?.p50 ?? null,
+    }),
     proof: proof(timeline),
     notes: notesOf(timeline, weighed.frame.trips.length),
   }

@@ -5,7 +5,7 @@ import type { Thing, Timeline } from '../timeline/timeline.ts'
 import { nextFor } from './advice.ts'
 import { candidatesOf, type Measured } from './candidates.ts'
 import { episodes } from './episodes.ts'
-import { type LineUp, lineUp, type Standing } from './line-up.ts'
+import { type ExposureWindow, type LineUp, lineUp, type Standing } from './line-up.ts'
 import { type LogView, logView } from './log-view.ts'
 import { type Preference, preferences } from './preference.ts'
 import { ODDS } from './prior-odds.ts'
@@ -27,6 +27,9 @@ export interface Weighed {
   /** What the log says by itself. */
   readonly log: LogView
   readonly frame: Frame
+  readonly sets: LineUp['sets']
+  /** The time of each suspect's likeliest window. */
+  readonly windows: ReadonlyMap<string, NonNullable<ExposureWindow['when']>>
 }
 
 /**
@@ -58,7 +61,10 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const none = noneSuspect(timeline, frame, weighed)
   const all = [...judged, ...unjudged, none]
   all.sort((a, b) => b.probability - a.probability || (a.of < b.of ? -1 : 1))
-  return { suspects: all, log, frame }
+  const windows = new Map(
+    tested.flatMap(({ of, window: { when } }) => (when === undefined ? [] : [[of, when] as const])),
+  )
+  return { suspects: all, log, frame, sets: weighed.sets, windows }
 }
 
 function judgedSuspect(
