@@ -29,7 +29,7 @@ import { levelWindows, ofOneThing } from './windows/level-windows.ts'
 import { sunWindows } from './windows/sun-windows.ts'
 import { type Partner, thingWindows } from './windows/thing-windows.ts'
 import { type Frame, type Layer, layeredWindow, marked, normalised, windowOf } from './windows/trip-share.ts'
-import { dryings, loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
+import { loadCurrentWindows, rainWindows, temperatureWindows } from './windows/weather-windows.ts'
 
 /** A device that opens too soon is fired by any sound load: how far the odds of all else fall then. */
 const UNDER_A_BAD_DEVICE = 0.001
@@ -97,9 +97,8 @@ export function candidatesOf(
     ]),
   )
   const isJudged = (of: string): boolean => (byThing.get(of)?.length ?? 0) > 0
-  const laws = dryings(frame, log.unexplained?.remainder ?? null)
-  const rain = rainOdds(timeline, log, laws)
-  const wet = wetTime(rain, laws)
+  const rain = rainOdds(log)
+  const wet = wetTime(rain, log.dryings)
   const level = levelWindows(frame, log, ofOneThing(log, wet))
   // a device that opens too soon does so whoever made the level high
   const anyLevel = levelWindows(frame, log, NO_SPANS)
@@ -110,7 +109,7 @@ export function candidatesOf(
     const odds = thingOdds(timeline, thing, log, isJudged) * innocence(log, thing.of)
     add(thing.of, odds, 'local', byThing.get(thing.of) ?? [])
   }
-  add('rain', rain, 'weather', rainWindows(frame, laws))
+  add('rain', rain, 'weather', rainWindows(frame, log.dryings))
   add('temperature', ODDS.temperature, 'weather', temperatureWindows(frame))
   for (const kind of ['clock', 'period', 'sun'] as const) {
     const seen = timedWindows(frame, log, kind)

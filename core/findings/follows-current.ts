@@ -8,6 +8,14 @@ const MINUTE_MS = 60_000
 const APART_MINUTES = 5
 const LEAST_AMPS = 0.5
 const LEAST_CHANGES = 30
+/** How leakage and load current change together. */
+export interface Together {
+  /** Correlation of the changes of both, squared. */
+  readonly correlation: number
+  /** Whether leakage follows the current; null where nobody can tell. */
+  readonly follows: boolean | null
+}
+
 /** Correlations from which on the leakage follows the current, and below which it does not; between them nobody can tell. */
 const FOLLOWS = 0.8
 const DOES_NOT = 0.74
@@ -15,15 +23,15 @@ const DOES_NOT = 0.74
 /**
  * Whether leakage follows the load current of the group whichever load carries it: the mark of a neutral–earth fault
  * (domain.md). A conductive share k of the current I on a capacitive standing level B reads L = √(B² + (kI)²), so the
- * changes of L² go with those of I²; with loads that leak by themselves they do so only in part. True or false, null
- * where the log cannot tell. Linear in minutes.
+ * changes of L² go with those of I²; with loads that leak by themselves they do so only in part. Null without a load
+ * current or with too few changes. Linear in minutes.
  */
-export function followsCurrent(timeline: Timeline, minutes: Series): boolean | null {
+export function followsCurrent(timeline: Timeline, minutes: Series): Together | null {
   const { loadCurrent } = timeline
   if (loadCurrent === null || minutes.t.length === 0) return null
-  const together = squaresTogether(minutes, loadCurrent)
-  if (together === null || (together >= DOES_NOT && together < FOLLOWS)) return null
-  return together >= FOLLOWS
+  const correlation = squaresTogether(minutes, loadCurrent)
+  if (correlation === null) return null
+  return { correlation, follows: correlation >= FOLLOWS ? true : correlation < DOES_NOT ? false : null }
 }
 
 /** Pearson correlation of the changes of leakage and load current, both squared, over five minutes; null with too few. */

@@ -5,12 +5,14 @@ import type { Series } from '../timeline/series.ts'
 import { joinSeries, sliceSeries } from '../timeline/series.ts'
 import { NO_SPANS, type Spans, union } from '../timeline/spans.ts'
 import type { Timeline } from '../timeline/timeline.ts'
-import { followsCurrent } from './follows-current.ts'
+import { followsCurrent, type Together } from './follows-current.ts'
 import { minuteLevels } from './minute-levels.ts'
 import type { RunProfile } from './run-profiles.ts'
 import { type TimedCluster, timedClusters } from './timed/timed-clusters.ts'
 import { type Unexplained, unexplained } from './unexplained.ts'
+import { type WetLift, wetLift } from './wet-lift.ts'
 import { thinned } from './windows/held.ts'
+import { type Drying, dryings } from './windows/weather-windows.ts'
 
 /** How far a thing's runs lift the level. */
 export interface Lift {
@@ -41,8 +43,13 @@ export interface LogView {
   readonly unexplained: Unexplained | null
   /** Loads that nobody named and that keep a schedule, highest first; empty without a log. */
   readonly timed: readonly TimedCluster[]
-  /** Whether leakage follows the group's load current whichever load carries it. */
+  /** Whether leakage follows the group's load current whichever load carries it; null where that cannot be told. */
   readonly followsCurrent: boolean | null
+  /** How closely it does. */
+  readonly withCurrent: Together | null
+  /** Drying laws of rain, and how far the level rises by the one that fits best; null without rain or log. */
+  readonly dryings: readonly Drying[]
+  readonly wetLift: WetLift | null
 }
 
 /** Runs or switchings that a lift must rest on. */
@@ -105,6 +112,9 @@ export function logView(
       unexplained: null,
       timed: [],
       followsCurrent: null,
+      withCurrent: null,
+      dryings: dryings(timeline.rain, null),
+      wetLift: null,
     }
   }
   const minutes = energisedMinutes(timeline, timeline.leakage)
@@ -115,6 +125,8 @@ export function logView(
     const topMa = Math.max(seen?.topMa ?? 0, found.heightMa)
     lifts.set(found.follows, liftOf(Math.max(seen?.usualMa ?? 0, found.heightMa), topMa, roomMa))
   }
+  const together = followsCurrent(timeline, minutes)
+  const laws = dryings(timeline.rain, found?.remainder ?? null)
   return {
     minutes,
     tripMa,
@@ -124,7 +136,10 @@ export function logView(
     outsized: outsizedOf(timeline, profiles),
     unexplained: found,
     timed: found === null ? [] : timedClusters(timeline, found.remainder),
-    followsCurrent: followsCurrent(timeline, minutes),
+    followsCurrent: together?.follows ?? null,
+    withCurrent: together,
+    dryings: laws,
+    wetLift: found === null ? null : wetLift(timeline, found.remainder, laws),
   }
 }
 

@@ -1,9 +1,9 @@
 import type { Headroom } from '../contract/findings.ts'
-import { intersect, totalMs } from '../timeline/spans.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
 import type { Lift, LogView } from './log-view.ts'
 import { OUTSIZED_MA } from './run-profiles.ts'
 import type { TimedCluster } from './timed/timed-clusters.ts'
+import { bestDrying } from './wet-lift.ts'
 import { heldAbove } from './windows/held.ts'
 import { HOUR_MS } from './windows/trip-share.ts'
 import type { Drying } from './windows/weather-windows.ts'
@@ -109,14 +109,10 @@ export function standingOdds(log: LogView, headroom: Headroom): number {
 }
 
 /** Rain: likelier when the log rises with it, unlikelier when the log is there and does not. */
-export function rainOdds(timeline: Timeline, log: LogView, laws: readonly Drying[]): number {
-  const lift = wetLiftShare(timeline, log, laws)
-  if (lift === null) return ODDS.rain
-  return ODDS.rain * (lift >= 0.12 ? 5 : lift >= 0.05 ? 1.5 : 0.08)
-}
-
-function bestDrying(laws: readonly Drying[]): Drying {
-  return laws.reduce((a, b) => (b.correlation > a.correlation ? b : a))
+export function rainOdds({ wetLift, tripMa }: LogView): number {
+  if (wetLift === null) return ODDS.rain
+  const share = wetLift.ma / tripMa
+  return ODDS.rain * (share >= 0.12 ? 5 : share >= 0.05 ? 1.5 : 0.08)
 }
 
 /** Wet time by the drying law that fits best, above a tenth of its peak; null where the leakage does not rise with rain. */
@@ -125,35 +121,6 @@ export function wetTime(rain: number, laws: readonly Drying[]): Float64Array | n
   const { wetness, lag } = bestDrying(laws)
   const peak = wetness.v.reduce((a, b) => Math.max(a, b), 0)
   return heldAbove(wetness, 0.1 * peak, true, lag * HOUR_MS).inside
-}
-
-/** Level in the wettest tenth less that in dry hours, over the trip current, by the drying law that fits best. */
-function wetLiftShare(timeline: Timeline, log: LogView, laws: readonly Drying[]): number | null {
-  if (log.unexplained === null || laws.length === 0) return null
-  const best = bestDrying(laws)
-  if (best.correlation < 0.2) return 0
-  const { remainder } = log.unexplained
-  const peak = best.wetness.v.reduce((a, b) => Math.max(a, b), 0)
-  if (peak <= 0) return null
-  const wet = heldAbove(best.wetness, 0.5 * peak, true, best.lag * HOUR_MS).inside
-  const dry = heldAbove(best.wetness, 0.05 * peak, false, best.lag * HOUR_MS).inside
-  const level = (spans: Float64Array): number => {
-    const here = intersect(spans, timeline.energised)
-    if (totalMs(here) === 0) return Number.NaN
-    let sum = 0
-    let n = 0
-    let k = 0
-    for (let i = 0; i < here.length; i += 2) {
-      while (k < remainder.t.length && remainder.t[k]! < here[i]!) k++
-      for (; k < remainder.t.length && remainder.t[k]! < here[i + 1]!; k++) {
-        sum += remainder.v[k]!
-        n++
-      }
-    }
-    return n === 0 ? Number.NaN : sum / n
-  }
-  const lift = level(wet) - level(dry)
-  return Number.isNaN(lift) ? null : lift / log.tripMa
 }
 
 /** Neutral–earth: decided mostly by whether leakage follows the load current whoever carries it. */

@@ -27,8 +27,7 @@ export interface Drying {
  * Antecedent precipitation (Kohler & Linsley 1951) under every half-life and lag that is tried, each correlated with
  * the hourly leakage that no named load accounts for. Empty without a rain channel.
  */
-export function dryings(frame: Frame, remainder: Series | null): Drying[] {
-  const { rain } = frame.timeline
+export function dryings(rain: Series | null, remainder: Series | null): Drying[] {
   if (rain === null || rain.t.length < 3) return []
   const list: Drying[] = []
   for (const halfLife of HALF_LIVES) {

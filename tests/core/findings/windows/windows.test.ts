@@ -173,7 +173,7 @@ describe('rainWindows', () => {
     const v = Float64Array.from(t, (_, i) => (i === 50 ? 3.9 : 0))
     const trips = [tripAt(START + 53 * HOUR), tripAt(START + 120 * HOUR)]
     const frame = frameOf(timelineOf({ rain: { t, v }, trips }))
-    const laws = dryings(frame, null)
+    const laws = dryings({ t, v }, null)
     const windows = rainWindows(frame, laws)
     expect(windows.reduce((sum, w) => sum + w.prior, 0)).toBeCloseTo(1, 10)
     // 3.9 mm fade to 0.2 mm in 17 h at a half-life of 4 h: 18 readings lie above
