@@ -62,7 +62,7 @@ function headroomSentence(headroom: Headroom): string {
 }
 
 function odds(p: number): string {
-  return p.toFixed(2)
+  return p >= 0.995 ? 'over 0.99' : p.toFixed(2)
 }
 
 /** `: 9 of 11 trips within 3 minutes of its start, against 0.7 by chance.`; only a full stop when there is no such count. */

@@ -3,7 +3,7 @@ import type { Timeline } from '../timeline/timeline.ts'
 import type { Measured } from './candidates.ts'
 import type { LogView } from './log-view.ts'
 import { whenWords } from './timed/timed-step.ts'
-import { countOf, current, figure, rounded, sentence } from './words.ts'
+import { countOf, current, figure, rounded } from './words.ts'
 
 /** What the log and the tests say of a suspect by themselves, whatever the trips did; null when nothing. */
 export function logReason(timeline: Timeline, of: string, measured: Measured, log: LogView): Reason | null {
@@ -46,7 +46,7 @@ function excursionReason({ unexplained, roomMa }: LogView): Reason | null {
   if (unexplained === null || unexplained.apart === 0) return null
   const { heightMa, apart } = unexplained
   return {
-    text: `Apart from trips the log shows ${countOf(apart, 'stretch').replace(/stretchs$/, 'stretches')} of about ${current(heightMa)} mA that no listed load accounts for; the usual headroom is ${current(roomMa)} mA.`,
+    text: `Apart from trips the log shows the level up by about ${current(heightMa)} mA ${countOf(apart, 'time')} without a listed load to account for it; the usual headroom is ${current(roomMa)} mA.`,
     method: 'level less what the budget says was on',
     figures: { stretches: apart, heightMa: rounded(heightMa), usualHeadroomMa: rounded(roomMa) },
   }
@@ -120,7 +120,7 @@ function supplyReason({ trips }: Measured): Reason | null {
     text:
       shared === 0
         ? 'At no trip did another device open or the voltage leave its band.'
-        : `At ${shared} of ${countOf(trips.length, 'trip')} another device opened too, or the voltage had left its band.`,
+        : `At ${shared} of ${trips.length} trips another device opened too, or the voltage had left its band.`,
     method: 'coincidence of trips across devices; supply voltage within 10 % (EN 50160, from memory)',
     figures: { shared, trips: trips.length },
   }
@@ -140,7 +140,7 @@ function quietReason(timeline: Timeline, { trips }: Measured, log: LogView): Rea
       ? ''
       : ` The largest rise that a listed load brings is ${current(lift.topMa)} mA (${label}); the usual headroom is ${current(log.roomMa)} mA.`
   return {
-    text: sentence(`${sudden} of ${countOf(seen, 'trip')} that the log shows came without warning.${largest}`),
+    text: `${sudden} of ${seen} trips that the log shows came without warning.${largest}`,
     method: 'course of the leakage before each trip; level over that before each start',
     figures: { sudden, logged: seen, largestRiseMa: rounded(lift.topMa), usualHeadroomMa: rounded(log.roomMa) },
   }

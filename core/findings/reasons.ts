@@ -2,10 +2,12 @@ import type { Grade, Reason } from '../contract/findings.ts'
 import { totalMs } from '../timeline/spans.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import type { Measured } from './candidates.ts'
+import { logReason } from './log-reasons.ts'
+import type { LogView } from './log-view.ts'
 import type { Preference } from './preference.ts'
 import { habitReason, ratioReason } from './preferring/habit-reason.ts'
 import { HOUR_MS } from './windows/trip-share.ts'
-import { current, figure, pValue, rounded } from './words.ts'
+import { current, figure, pValue, rounded, sentence } from './words.ts'
 
 const MOST_REASONS = 4
 
@@ -18,6 +20,7 @@ export function reasonsOf(
   of: string,
   preference: Preference | undefined,
   measured: Measured,
+  log: LogView,
   grade: Grade,
   leader: string | null,
 ): Reason[] {
@@ -27,6 +30,8 @@ export function reasonsOf(
     const habit = habitReason(preference)
     if (habit !== null) reasons.push(habit)
   }
+  const byLog = logReason(timeline, of, measured, log)
+  if (byLog !== null) reasons.push(byLog)
   const rise = riseReason(of, measured)
   if (rise !== null) reasons.push(rise)
   const trigger = triggerReason(of, measured)
@@ -48,8 +53,8 @@ function preferenceReason(p: Preference, grade: Grade, leader: string | null): R
       : p.inside <= p.expected
         ? `Only ${fell}; ${chance}.`
         : grade === 'cleared' && leader !== null
-          ? `${fell} and ${chance}, but ${leader} explains the same trips better.`
-          : `${fell}; ${chance} (${pValue(p.pFamily ?? p.pAdjusted)} after paying for all that was tried).`
+          ? `${sentence(fell)} and ${chance}, but ${leader} explains the same trips better.`
+          : `${sentence(fell)}; ${chance} (${pValue(p.pFamily ?? p.pAdjusted)} after paying for all that was tried).`
   return {
     text,
     method: `exact conditional test of two Poisson rates (Przyborowski & Wilenski 1940), adjusted by ${p.pFamily === null ? 'Holm (1979)' : 'the best of all windows under circular shifts of the trips (Westfall & Young 1993), and by Holm (1979)'}`,

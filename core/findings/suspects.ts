@@ -6,6 +6,7 @@ import { nextFor } from './advice.ts'
 import { candidatesOf, type Measured } from './candidates.ts'
 import { episodes } from './episodes.ts'
 import { type ExposureWindow, type LineUp, lineUp, type Standing } from './line-up.ts'
+import { logReason } from './log-reasons.ts'
 import { type LogView, logView } from './log-view.ts'
 import { type Preference, preferences } from './preference.ts'
 import { ODDS } from './prior-odds.ts'
@@ -58,7 +59,7 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
   )
   const seen = new Set(judged.map((s) => s.of))
   const unjudged = timeline.things.filter((t) => !seen.has(t.of)).map((t) => unjudgedSuspect(timeline, t, weighed.none))
-  const none = noneSuspect(timeline, frame, weighed)
+  const none = noneSuspect(frame, weighed, measured, log)
   const all = [...judged, ...unjudged, none]
   all.sort((a, b) => b.probability - a.probability || (a.of < b.of ? -1 : 1))
   const windows = new Map(
@@ -83,14 +84,14 @@ function judgedSuspect(
   const same = sameExposure(frame, standing, all)
   const leading = all.reduce((best, s) => (s.probability > best.probability ? s : best), standing)
   const leader = leading === standing || leading.probability < 0.6 ? null : nameOf(timeline, leading.of)
-  const because: Reason[] = reasonsOf(timeline, standing.of, preference, measured, grade, leader)
+  const because: Reason[] = reasonsOf(timeline, standing.of, preference, measured, log, grade, leader)
   const suspect: Suspect = {
     of: standing.of,
     label: nameOf(timeline, standing.of),
     probability,
     share: rounded(standing.share),
     grade,
-    role: roleOf(standing.of, measured),
+    role: roleOf(standing.of, probability, measured),
     because,
     next: nextFor(timeline, standing.of, grade, same),
   }
@@ -138,13 +139,18 @@ function sameExposure(frame: Frame, standing: Standing, all: readonly Standing[]
     .map((other) => other.of)
 }
 
+/** Share of the standing leakage from which on a thing uses headroom up, and probability from which on it may fire trips. */
+const USES = 0.15
+const FIRES = 0.2
+
 /** Firing trips and using up headroom are two questions; both are answered here. */
-function roleOf(of: string, measured: Measured): Role {
+function roleOf(of: string, probability: number, measured: Measured): Role {
   if (of === 'standing') return 'contributor'
   const line = measured.budget.find((b) => b.of === of)
   const standing = measured.headroom.standingMa?.p50 ?? 0
-  if (line === undefined || line.ma === null || standing === 0) return 'trigger'
-  return line.ma >= 0.15 * standing ? 'both' : 'trigger'
+  const uses = standing > 0 && (line?.ma ?? 0) >= USES * standing
+  if (!uses) return 'trigger'
+  return probability >= FIRES ? 'both' : 'contributor'
 }
 
 function unjudgedSuspect(timeline: Timeline, thing: Thing, none: number): Suspect {
@@ -170,7 +176,9 @@ function unjudgedSuspect(timeline: Timeline, thing: Thing, none: number): Suspec
   }
 }
 
-function noneSuspect(timeline: Timeline, frame: Frame, weighed: LineUp): Suspect {
+function noneSuspect(frame: Frame, weighed: LineUp, measured: Measured, log: LogView): Suspect {
+  const { timeline } = frame
+  const byLog = logReason(timeline, 'none', measured, log)
   const n = frame.trips.length
   const probability = rounded(weighed.none)
   return {
@@ -189,6 +197,7 @@ function noneSuspect(timeline: Timeline, frame: Frame, weighed: LineUp): Suspect
         method: 'gamma–Poisson marginal likelihood of no cause',
         figures: { trips: n, energisedHours: rounded(frame.hours) },
       },
+      ...(byLog === null ? [] : [byLog]),
     ],
     next: n === 0 ? 'Leave the logger on site.' : 'Leave the logger longer, and log what is not logged yet.',
   }

@@ -34,7 +34,9 @@ export function wetLift(timeline: Timeline, remainder: Series, laws: readonly Dr
   if (peak <= 0) return null
   const wet = heldAbove(wetness, WET * peak, true, lag * HOUR_MS).inside
   const dry = heldAbove(wetness, DRY * peak, false, lag * HOUR_MS).inside
-  const ma = meanWithin(remainder, intersect(wet, timeline.energised)) - meanWithin(remainder, intersect(dry, timeline.energised))
+  const ma =
+    meanWithin(remainder, intersect(wet, timeline.energised)) -
+    meanWithin(remainder, intersect(dry, timeline.energised))
   return Number.isNaN(ma) ? null : { ma, halfLife, lag, correlation }
 }
 

@@ -112,7 +112,7 @@ function thingsOf(rcd: Rcd, sources: StateSources, notes: string[]): Thing[] {
         of: `${kind}:${ref}`,
         kind,
         ref,
-        label: label ?? ref,
+        label: label ?? (kind === 'circuit' ? `circuit ${ref}` : ref),
         circuit: circuit.ref,
         isolation,
         state,
