@@ -96,7 +96,7 @@ describe('states of circuits and loads', () => {
       ['circuit:8', 'assumed', 'two-pole'],
       ['load:freezer', 'assumed', 'two-pole'],
     ])
-    expect(things.map((t) => t.label)).toEqual(['Bakehouse sockets', 'Mixer', 'proving', '8', 'freezer'])
+    expect(things.map((t) => t.label)).toEqual(['Bakehouse sockets', 'Mixer', 'proving', 'circuit 8', 'freezer'])
     expect(hours(things[0]!.state.on)).toEqual([0, 24])
     // Of a load without any record nothing is known: unknown is never off.
     expect([things[1]!.state.on.length, things[1]!.state.off.length]).toEqual([0, 0])
