@@ -57,7 +57,7 @@ export function findings(evidence: Evidence): Findings {
       budget: lines,
       standingMa: room.standingMa?.p50 ?? null,
     }),
-    proof: proof(timeline),
+    proof: proof(timeline, trips),
     notes: notesOf(timeline, weighed.frame.trips.length),
   }
 }
