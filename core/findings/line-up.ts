@@ -75,7 +75,7 @@ export interface LineUp {
 const LEAST_DOUBT = 0.01
 
 /** Each cause beyond the first is so much rarer still: two faults at once are no coincidence of two ordinary ones. */
-const EXTRA_CAUSE = 0.15
+const EXTRA_CAUSE = 0.04
 
 /** Trips of which no listed thing is the cause are so much rarer than the odds of the suspects alone say. */
 const NO_CAUSE = 0.5

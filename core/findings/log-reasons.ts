@@ -69,17 +69,17 @@ function rainReason({ wetLift }: LogView): Reason | null {
 
 function currentReason({ withCurrent }: LogView): Reason | null {
   if (withCurrent === null) return null
-  const { correlation, follows } = withCurrent
+  const { correlation, maPerAmp, reach, follows } = withCurrent
   const text =
     follows === true
-      ? 'The leakage follows the load current of the whole group, whichever load carries it.'
+      ? `The leakage follows the load current of the whole group, whichever load carries it: about ${figure(maPerAmp)} mA for each ampere.`
       : follows === false
         ? 'The leakage does not follow the load current of the whole group.'
         : 'Whether the leakage follows the load current of the whole group cannot be told.'
   return {
     text,
     method: 'correlation of the five-minute changes of leakage and load current, both squared',
-    figures: { correlation: rounded(correlation) },
+    figures: { correlation: rounded(correlation), maPerAmp: rounded(maPerAmp), shareOfHeadroom: rounded(reach) },
   }
 }
 

@@ -125,7 +125,8 @@ export function logView(
     const topMa = Math.max(seen?.topMa ?? 0, found.heightMa)
     lifts.set(found.follows, liftOf(Math.max(seen?.usualMa ?? 0, found.heightMa), topMa, roomMa))
   }
-  const together = followsCurrent(timeline, minutes)
+  const usualMa = headroom.standingMa?.p50 ?? 0
+  const together = followsCurrent(timeline, minutes, usualMa, tripMa)
   const laws = dryings(timeline.rain, found?.remainder ?? null)
   return {
     minutes,

@@ -8,6 +8,7 @@ const DAY_MINUTES = 1_440
 const WIDTHS = [10, 20, 40, 90, 180] as const
 /** Phase widths of a period that are tried, as shares of it. */
 const PHASE_WIDTHS = [0.06, 0.15] as const
+const VAGUE_MS = 20 * MINUTE_MS
 /** Fewer trips than this show no period. */
 const LEAST_TRIPS_FOR_PERIOD = 4
 
@@ -58,7 +59,10 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
   const { from, to } = frame.timeline
   const spanHours = (to - from) / HOUR_MS
   const longest = Math.min(240, spanHours / 3)
-  if (frame.trips.length < LEAST_TRIPS_FOR_PERIOD || longest < 2) return []
+  // a trip known no closer than this says nothing of a phase
+  const isVague = frame.trips.map((trip) => trip.to - trip.from > VAGUE_MS)
+  const known = isVague.filter((vague) => !vague).length
+  if (known < LEAST_TRIPS_FOR_PERIOD || longest < 2) return []
   const middles = frame.trips.map((t) => (t.from + t.to) / 2)
   // a timer behind the device stands still while it is open: both clocks are tried
   const clocks = [middles.map((t) => (t - from) / HOUR_MS), middles.map(energisedClock(frame.timeline))]
@@ -75,10 +79,13 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
         for (let k = 0; k < phases; k++) {
           const start = k / phases
           let hits = 0
-          for (const t of at) if (fraction(t * frequency - start) < width) hits++
+          const isIn = (t: number, i: number): boolean => !isVague[i] && fraction(t * frequency - start) < width
+          at.forEach((t, i) => {
+            if (isIn(t, i)) hits++
+          })
           // a window with no more trips than its share is no evidence for the period; its prior is kept all the same
-          if (hits < 3 || hits < 3 * width * at.length) continue
-          const inside = Float64Array.from(at, (t) => (fraction(t * frequency - start) < width ? 1 : 0))
+          if (hits < 3 || hits < 3 * width * known) continue
+          const inside = Float64Array.from(at, (t, i) => (isVague[i] ? width : isIn(t, i) ? 1 : 0))
           windows.push({
             key: `${hours.toFixed(3)}h@${start.toFixed(2)}+${width}${c === 1 ? ' under supply' : ''}`,
             words: `in the same ${Math.round(width * 100)} % of a period of ${hours.toFixed(1)} h${c === 1 ? ' under supply' : ''}`,

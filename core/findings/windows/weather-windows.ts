@@ -109,7 +109,7 @@ const LOAD_POWERS = [3, 8] as const
  * Hours of heavy load on the whole group, and load the more the heavier: what fires a neutral–earth fault.
  */
 export function loadCurrentWindows(frame: Frame): ExposureWindow[] {
-  const { loadCurrent } = frame.timeline
+  const loadCurrent = liveAtTrips(frame)
   const plain = quantileWindows(
     frame,
     loadCurrent,
@@ -131,6 +131,29 @@ export function loadCurrentWindows(frame: Frame): ExposureWindow[] {
     return withKicks(frame, `heavier-${power}`, 'under load, the more the heavier', 0.35, layers, held[0]!.known)
   })
   return normalised([...plain.map((w) => ({ ...w, prior: 0.3 * w.prior })), ...steep.flat()])
+}
+
+/** Clocks of people and loggers differ by this much. */
+const WITH_TRIP_MS = 150_000
+
+/**
+ * The group's load current as it was before each trip opened the device: its fall to nothing, which a clock that runs
+ * ahead or a trip noted late puts before the trip, is the trip's own doing.
+ */
+function liveAtTrips({ timeline: { loadCurrent }, trips }: Frame): Series | null {
+  if (loadCurrent === null) return null
+  const v = loadCurrent.v.slice()
+  for (const { from, to } of trips) {
+    if (to - from > WITH_TRIP_MS) continue
+    const end = lowerBound(loadCurrent.t, from + 1)
+    const begin = Math.max(0, lowerBound(loadCurrent.t, from - WITH_TRIP_MS) - 1)
+    let live = begin
+    for (let i = begin; i < end; i++) {
+      if (v[i]! > 0.1 * v[live]!) live = i
+      else v[i] = v[live]!
+    }
+  }
+  return { t: loadCurrent.t, v }
 }
 
 function quantileWindows(

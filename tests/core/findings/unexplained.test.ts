@@ -115,15 +115,15 @@ describe('followsCurrent', () => {
   it('sees a neutral–earth fault: leakage goes with the current, whoever carries it', () => {
     // conductive share k of the load current on 8 mA of capacitive leakage: |I| = √(B² + (kI)²), domain.md, Formulas
     const v = minutes.map((t, i) => Math.hypot(8, 0.9 * amps(t)) + noise[i]!)
-    expect(followsCurrent(timeline, { t: minutes, v })?.follows).toBe(true)
+    expect(followsCurrent(timeline, { t: minutes, v }, 8, 14)?.follows).toBe(true)
   })
 
   it('does not take one leaking load for it', () => {
     const v = minutes.map((t, i) => 8 + (contains(loads[1][0].state.on, t) ? 7 : 0) + noise[i]!)
-    expect(followsCurrent(timeline, { t: minutes, v })?.follows).toBe(false)
+    expect(followsCurrent(timeline, { t: minutes, v }, 8, 14)?.follows).toBe(false)
   })
 
   it('says nothing without a load current', () => {
-    expect(followsCurrent(timelineOf({ things }), { t: minutes, v: minutes.map(() => 8) })).toBeNull()
+    expect(followsCurrent(timelineOf({ things }), { t: minutes, v: minutes.map(() => 8) }, 8, 14)).toBeNull()
   })
 })
