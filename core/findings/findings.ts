@@ -7,6 +7,7 @@ import type { Timeline } from '../timeline/timeline.ts'
 import { answer } from './answer.ts'
 import { budget } from './budget.ts'
 import { coverage } from './coverage.ts'
+import { epochs } from './epochs/epochs.ts'
 import { headroom } from './headroom.ts'
 import { nextSteps } from './isolation.ts'
 import { withLocalTimes } from './local-text.ts'
@@ -58,6 +59,7 @@ export function findings(evidence: Evidence): Findings {
       standingMa: room.standingMa?.p50 ?? null,
     }),
     proof: proof(timeline, trips),
+    epochs: epochs(timeline),
     notes: notesOf(timeline, weighed.frame.trips.length),
   }
 }

@@ -1,0 +1,45 @@
+import type { Random } from '../../statistics/random.ts'
+import type { LocalClock } from '../../timeline/local-clock.ts'
+import { spanAt } from '../../timeline/spans.ts'
+import type { Timeline } from '../../timeline/timeline.ts'
+
+const MINUTE_MS = 60_000
+const HOUR_MS = 60 * MINUTE_MS
+/** As far from the trip's time of day at most. */
+const AROUND_MIN = 30
+/** Under supply since at least so long, and logged. */
+const CLOSED_MS = 30 * MINUTE_MS
+/** Draws for each time wanted; a trip at an hour that other days do not have gives up. */
+const TRIES = 8
+
+/**
+ * Draws instants at about the time of day of a trip on other days, under supply and logged, with no trip within an hour: what is usual at
+ * that hour. As many as asked for or fewer.
+ */
+export function quietTimes(
+  timeline: Timeline,
+  clock: LocalClock,
+  trip: number,
+  count: number,
+  random: Random,
+): number[] {
+  const days = clock.days(timeline.from, timeline.to)
+  const minute = clock.minuteOfDay(trip)
+  const own = clock.dayNumber(trip)
+  const list: number[] = []
+  for (let tries = TRIES * count; tries > 0 && list.length < count; tries--) {
+    const day = days[random.integer(days.length)]!
+    const offset = minute + (2 * random.uniform() - 1) * AROUND_MIN
+    const at = Math.round(day.from + offset * MINUTE_MS)
+    if (day.number === own || at <= timeline.from || at >= timeline.to) continue
+    const closed = spanAt(timeline.energised, at - 1)
+    if (closed === undefined || at - closed.from < CLOSED_MS) continue
+    if (spanAt(timeline.logged, at - 1) === undefined || isNearTrip(timeline, at)) continue
+    list.push(at)
+  }
+  return list
+}
+
+function isNearTrip({ trips }: Timeline, at: number): boolean {
+  return trips.some((trip) => at > trip.from - HOUR_MS && at < trip.to + HOUR_MS)
+}
