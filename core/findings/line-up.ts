@@ -78,7 +78,7 @@ const LEAST_DOUBT = 0.01
 const EXTRA_CAUSE = 0.04
 
 /** Trips of which no listed thing is the cause are so much rarer than the odds of the suspects alone say. */
-const NO_CAUSE = 0.5
+const NO_CAUSE = 0.4
 
 /** How many windows of a suspect go on to sets of two and three, and how many suspects. */
 const WINDOWS_IN_PAIRS = 3

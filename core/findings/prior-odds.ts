@@ -42,8 +42,8 @@ export const ABNORMAL = 12
  * at once every time, keeps the rest from falling further. Judgement, tuned on simulated sites.
  */
 const REACH: readonly { readonly usual: number; readonly top: number; readonly factor: number }[] = [
-  { usual: 0.33, top: 0.33, factor: 40 },
-  { usual: 0.18, top: 0.4, factor: 20 },
+  { usual: 0.33, top: 0.33, factor: 80 },
+  { usual: 0.18, top: 0.4, factor: 30 },
   { usual: 0.15, top: 0.25, factor: 1.5 },
   { usual: 0.05, top: 0.15, factor: 0.6 },
 ]
