@@ -14,6 +14,7 @@ import { withLocalTimes } from './local-text.ts'
 import { patterns } from './patterns/patterns.ts'
 import { proof } from './proof.ts'
 import { runProfiles } from './run-profiles.ts'
+import { spreadFindings } from './spreading/spread-findings.ts'
 import { suspects } from './suspects.ts'
 import { timedStepOf } from './timed/timed-step.ts'
 import { tripFindings } from './trips.ts'
@@ -60,6 +61,7 @@ export function findings(evidence: Evidence): Findings {
     }),
     proof: proof(timeline, trips),
     epochs: epochs(timeline),
+    spread: spreadFindings(timeline, lines, room),
     notes: notesOf(timeline, weighed.frame.trips.length),
   }
 }

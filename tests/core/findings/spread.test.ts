@@ -1,3 +1,4 @@
+import fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
 import type { BudgetLine } from '../../../core/contract/findings.ts'
 import { spread } from '../../../core/findings/spread.ts'
@@ -45,6 +46,33 @@ describe('spread', () => {
       expect(found.worstMa).toBeLessThanOrEqual(best + 0.01)
       expect(found.devices.flatMap((d) => d.of).sort()).toEqual(lines.map((l) => l.of).sort())
     }
+  })
+
+  it('parts five circuits as well as they can be parted', () => {
+    // Korf (1998), Artificial Intelligence 106, 181-203 (from memory): 4, 5, 6, 7, 8; largest first makes 17 and 13, the best is 15 and 15.
+    const lines = [4, 5, 6, 7, 8].map((ma, i) => lineOf(`circuit:${i + 1}`, ma, 0))
+    expect(spread(lines, 2).worstMa).toBe(15)
+    expect(spread(lines, 3).worstMa).toBe(bruteForce([4, 5, 6, 7, 8], 3))
+  })
+
+  it('is exact for any circuits, and keeps to the laws of such plans', () => {
+    const circuits = fc.array(fc.integer({ min: 0, max: 400 }), { minLength: 1, maxLength: 9 })
+    fc.assert(
+      fc.property(circuits, fc.constantFrom(2, 3), (tenths, n) => {
+        const sizes = tenths.map((x) => x / 10)
+        const lines = sizes.map((ma, i) => lineOf(`circuit:${i}`, ma, 0))
+        const { worstMa, exact } = spread(lines, n)
+        expect(exact).toBe(true)
+        // sizes are tenths of a milliamp, so that within 0.01 mA is exact
+        expect(worstMa).toBeCloseTo(bruteForce(sizes, n), 9)
+        expect(spread([...lines].reverse(), n).worstMa).toBeCloseTo(worstMa, 9)
+        expect(spread(lines, n + 1).worstMa).toBeLessThanOrEqual(worstMa + 1e-9)
+        expect(spread([...lines, lineOf('circuit:spare', 0, 0)], n).worstMa).toBeCloseTo(worstMa, 9)
+        const scaled = lines.map((l) => lineOf(l.of, 3 * l.ma!, 0))
+        expect(spread(scaled, n).worstMa).toBeCloseTo(3 * worstMa, 9)
+      }),
+      { numRuns: 60 },
+    )
   })
 
   it('comes to an end with 24 circuits on four devices', () => {
