@@ -1,6 +1,6 @@
 import type { BudgetLine, Headroom, TripFinding } from '../contract/findings.ts'
 import { writeInstant } from '../contract/primitives.ts'
-import type { Timeline } from '../timeline/timeline.ts'
+import type { Timeline, TimelineTrip } from '../timeline/timeline.ts'
 import { type TripFact, tripFacts } from './trip-facts.ts'
 import { sharesAt } from './trip-shares.ts'
 import { isClimb, type Trigger, triggerOf } from './trip-trigger.ts'
@@ -32,8 +32,20 @@ export function tripFindings(timeline: Timeline, lines: readonly BudgetLine[], h
 }
 
 function textOf(timeline: Timeline, fact: TripFact, trigger: Trigger | null, headroom: Headroom): string {
-  const parts = [levelText(fact, headroom), courseText(timeline, fact), triggerText(trigger)]
+  const parts = [
+    originText(timeline.trips[fact.index]!),
+    levelText(fact, headroom),
+    courseText(timeline, fact),
+    triggerText(trigger),
+  ]
   return sentence(`${parts.filter((part) => part !== '').join('; ')}.`)
+}
+
+/** Where the trip and its time come from, when not from whoever wrote it down. */
+function originText(trip: TimelineTrip): string {
+  if (trip.id === null) return 'nobody wrote this trip down: the log falls to nothing and comes back'
+  if (!trip.narrowed) return ''
+  return trip.from === trip.to ? 'found later; the log shows when it came' : 'found later; the log narrows when it came'
 }
 
 function levelText(fact: TripFact, headroom: Headroom): string {
@@ -47,7 +59,7 @@ function levelText(fact: TripFact, headroom: Headroom): string {
 function courseText(timeline: Timeline, fact: TripFact): string {
   switch (fact.course) {
     case 'shared':
-      return sharedText(fact.sharedWith)
+      return sharedText(timeline, fact.sharedWith)
     case 'unseen':
       return unseenText(timeline, fact)
     case 'step':
@@ -64,10 +76,15 @@ function courseText(timeline: Timeline, fact: TripFact): string {
   }
 }
 
-function sharedText(sharedWith: readonly string[]): string {
-  const devices = sharedWith.filter((name) => name !== 'supply')
+function sharedText(timeline: Timeline, sharedWith: readonly string[]): string {
+  const devices = sharedWith
+    .filter((name) => name !== 'supply')
+    .map((ref) => timeline.sheet.rcds.find((rcd) => rcd.ref === ref)?.label ?? ref)
   const voltage = sharedWith.includes('supply') ? 'the voltage left its band just before' : ''
-  const others = devices.length === 0 ? '' : `device ${devices.join(', ')} opened at the same time`
+  const others =
+    devices.length === 0
+      ? ''
+      : `${devices.length === 1 ? 'device' : 'devices'} ${devices.join(', ')} opened at the same time`
   return [others, voltage].filter((text) => text !== '').join(' and ')
 }
 
@@ -75,7 +92,7 @@ function unseenText(timeline: Timeline, fact: TripFact): string {
   const trip = timeline.trips[fact.index]!
   if (timeline.leakage === null) return 'no leakage is logged on this device'
   if (trip.from !== trip.to) {
-    return `somewhere in ${duration((trip.to - trip.from) / HOUR_MS)}, so nothing can be said of the moments before`
+    return `somewhere in ${duration((trip.to - trip.from) / HOUR_MS)}, so nothing can be said of the moments before; it counts spread over that time`
   }
   return 'no reading near enough to the trip'
 }

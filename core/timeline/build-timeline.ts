@@ -4,6 +4,7 @@ import type { Evidence, Kept } from './evidence.ts'
 import { both, clipExposure, edgesOf } from './exposure.ts'
 import { leakageOf } from './group-leakage.ts'
 import { localClock } from './local-clock.ts'
+import { otherFalls } from './other-falls.ts'
 import { byTime, writtenTrip } from './outages.ts'
 import { sendsOnlyChanges } from './running.ts'
 import { gapLimit, gaps, loggedSpans, type Series, sliceSeries } from './series.ts'
@@ -71,10 +72,12 @@ export function buildTimeline(evidence: Evidence): Timeline {
     things: thingsOf(rcd, sources, notes),
     trips: within(supply.trips, from, to),
     otherTrips: within(
-      evidence.trips
-        .filter((trip) => trip.rcd !== rcd.ref && sheet.rcds.some((r) => r.ref === trip.rcd))
-        .map(writtenTrip)
-        .sort(byTime),
+      [
+        ...evidence.trips
+          .filter((trip) => trip.rcd !== rcd.ref && sheet.rcds.some((r) => r.ref === trip.rcd))
+          .map(writtenTrip),
+        ...otherFalls(evidence, rcd.ref, series),
+      ].sort(byTime),
       from,
       to,
     ),

@@ -71,7 +71,7 @@ export interface Timeline {
   readonly things: readonly Thing[]
   /** Of this device within [from, to), by time. Written down, or proposed by the log (`id` null). */
   readonly trips: readonly TimelineTrip[]
-  /** Of the site's other devices. */
+  /** Of the site's other devices: written down, or falls of their logs that nobody wrote down (`id` null). */
   readonly otherTrips: readonly TimelineTrip[]
   readonly rain: Series | null
   readonly temperature: Series | null
