@@ -26,7 +26,7 @@ export interface Preference {
   readonly pAdjusted: number
   /** Chance that the best of all windows tried, of all suspects, fits as well by chance; null where it is no set of time. */
   readonly pFamily: number | null
-  /** The same question with like hours compared; null where the window is no set of time. */
+  /** The same question with like hours compared; null where no trip is inside or the window is no set of time. */
   readonly byHour: Stratified | null
   /** With the same hour of the same weekday within four weeks; null in short spans or when too few trips tell. */
   readonly crossover: Stratified | null
@@ -44,7 +44,7 @@ const LEAST_CROSSOVER_MS = 21 * 86_400_000
 /** Fewer telling trips than this make no case-crossover. */
 const LEAST_TELLING = 3
 /** Windows of all suspects that shifts look at; more would cost too much. */
-const MOST_WINDOWS = 500
+const MOST_WINDOWS = 240
 
 /**
  * Do trips prefer an exposure (methods.md §5)? Exact conditional tests of rates inside against outside (Przyborowski &
@@ -69,7 +69,8 @@ export function preferences(frame: Frame, tested: readonly Tested[]): Preference
     const count = Math.min(trips.length, Math.floor(inside + 1e-9))
     const outside = Math.max(1e-9, hours - window.insideHours)
     const test = poissonRateRatio([count, trips.length - count], [window.insideHours, outside], { confidence: 0.9 })
-    const { when } = window
+    // with no trip inside like hours cannot tell more than unlike ones
+    const when = inside > 0 ? window.when : undefined
     const crossover = when === undefined || byWeekday === null ? null : stratified(byWeekday, when, trips)
     return {
       of,

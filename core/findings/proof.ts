@@ -51,7 +51,8 @@ export function proof(timeline: Timeline, found: readonly TripFinding[] = []): P
   const { from, reached } = beginningOf(timeline, trips, remedies, remedies.length - 1)
   const sides = sidesOf(timeline, trips, from, at, timeline.to)
   const verdict = verdictOf(timeline, sides, timeline.to)
-  const level = levelChange(timeline, timeline.from, at, timeline.to)
+  const listed = [...remedies.keys()].slice(-MOST_LISTED).map((i) => oneByOne(timeline, trips, remedies, i))
+  const level = listed.at(-1)?.level ?? null
   const cause = newCause(timeline, { sides, of: latest.of ?? null, at, to: timeline.to, level, found })
   const texts = [
     verdict.text,
@@ -69,7 +70,7 @@ export function proof(timeline: Timeline, found: readonly TripFinding[] = []): P
     rate: rateChange(sides),
     level,
     newCause: cause,
-    remedies: [...remedies.keys()].slice(-MOST_LISTED).map((i) => oneByOne(timeline, trips, remedies, i)),
+    remedies: listed,
   }
 }
 

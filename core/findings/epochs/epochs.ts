@@ -51,9 +51,10 @@ export function epochs(timeline: Timeline): Epochs {
   )
   const random = seededRandom(`epochs ${n} ${Math.round((timeline.to - timeline.from) / 60_000)}`)
   const clock = localClock(timeline.sheet.timeZone)
+  const days = clock.days(timeline.from, timeline.to)
   const controls = seen
     .map(({ at }) =>
-      quietTimes(timeline, clock, at, CONTROLS, random).map((t) => courseBefore(timeline, leakage, t, axis)),
+      quietTimes(timeline, clock, days, at, CONTROLS, random).map((t) => courseBefore(timeline, leakage, t, axis)),
     )
     .filter((courses) => courses.length >= 2)
   const band = controls.length < Math.max(LEAST_TRIPS, n / 2) ? null : bandOf(controls, n, axis, random)

@@ -1,5 +1,5 @@
 import type { Random } from '../../statistics/random.ts'
-import type { LocalClock } from '../../timeline/local-clock.ts'
+import type { LocalClock, LocalDay } from '../../timeline/local-clock.ts'
 import { spanAt } from '../../timeline/spans.ts'
 import type { Timeline } from '../../timeline/timeline.ts'
 
@@ -14,16 +14,16 @@ const TRIES = 8
 
 /**
  * Draws instants at about the time of day of a trip on other days, under supply and logged, with no trip within an hour: what is usual at
- * that hour. As many as asked for or fewer.
+ * that hour. `days` are the civil days of the span. As many as asked for or fewer.
  */
 export function quietTimes(
   timeline: Timeline,
   clock: LocalClock,
+  days: readonly LocalDay[],
   trip: number,
   count: number,
   random: Random,
 ): number[] {
-  const days = clock.days(timeline.from, timeline.to)
   const minute = clock.minuteOfDay(trip)
   const own = clock.dayNumber(trip)
   const list: number[] = []

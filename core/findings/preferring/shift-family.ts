@@ -10,9 +10,9 @@ export interface Family {
 
 /** Energised time is cut into cells so long at least, ms, and into so many at most. */
 const CELL_MS = 5_000
-const MOST_CELLS = 1 << 19
+const MOST_CELLS = 1 << 18
 /** A trip known as an interval stands at so many points of it. */
-const POINTS = 8
+const POINTS = 4
 /** Shifts: as many as this many looks at a trip allow, within limits. */
 const LOOKS = 40_000
 const LEAST_SHIFTS = 199
@@ -72,18 +72,18 @@ export function shiftFamily(
   return found
 }
 
-/** Position on the axis of energised time, in cells. */
+/** Position on the axis of energised time, in cells; quick for times that ascend. */
 type Axis = (t: number) => number
 
 function energisedAxis(energised: Spans, scale: number): Axis {
   const before = new Float64Array(energised.length >>> 1)
   for (let i = 1; i < before.length; i++) before[i] = before[i - 1]! + energised[2 * i - 1]! - energised[2 * i - 2]!
+  const last = before.length - 1
+  let k = 0
   return (t) => {
-    let i = lowerBound(energised, t)
-    if (i >= energised.length) i = energised.length - 1
-    const k = i >>> 1
-    const inside = Math.max(0, Math.min(t, energised[2 * k + 1]!) - energised[2 * k]!)
-    return (before[k]! + inside) * scale
+    if (k > 0 && energised[2 * k - 1]! >= t) k = Math.min(last, lowerBound(energised, t) >>> 1)
+    while (k < last && energised[2 * k + 1]! < t) k++
+    return (before[k]! + Math.max(0, Math.min(t, energised[2 * k + 1]!) - energised[2 * k]!)) * scale
   }
 }
 

@@ -22,6 +22,8 @@ export interface Stratified {
 
 /** Ratios beyond e^12 are infinite to any purpose. */
 const FAR = 12
+/** ln of a ratio, to five digits. */
+const CLOSE = 2e-6
 const CONFIDENCE = 0.9
 const GOLDEN = (Math.sqrt(5) - 1) / 2
 
@@ -82,7 +84,7 @@ function estimate(trips: readonly (readonly Placed[])[]): { ratio: number; low: 
   let a = high - GOLDEN * (high - low)
   let c = low + GOLDEN * (high - low)
   let [fa, fc] = [at(a), at(c)]
-  while (high - low > 1e-7) {
+  while (high - low > CLOSE) {
     if (fa >= fc) {
       high = c
       c = a
@@ -108,7 +110,7 @@ function estimate(trips: readonly (readonly Placed[])[]): { ratio: number; low: 
 
 function crossing(at: (b: number) => number, floor: number, outside: number, inside: number): number {
   let [far, near] = [outside, inside]
-  while (Math.abs(far - near) > 1e-7) {
+  while (Math.abs(far - near) > CLOSE) {
     const middle = (far + near) / 2
     if (at(middle) > floor) near = middle
     else far = middle
