@@ -64,6 +64,17 @@ export function sliceSeries(series: Series, from: number, to: number): Series {
  * series; NaN with fewer than two readings.
  */
 export function usualInterval(series: Series): number {
+  const kept = usualIntervals.get(series.t)
+  if (kept !== undefined) return kept
+  const interval = middleDistance(series)
+  usualIntervals.set(series.t, interval)
+  return interval
+}
+
+/** Asked for again and again of the same columns, which nobody changes. */
+const usualIntervals = new WeakMap<Float64Array, number>()
+
+function middleDistance(series: Series): number {
   const n = series.t.length - 1
   if (n < 1) return Number.NaN
   const count = Math.min(n, 1_001)

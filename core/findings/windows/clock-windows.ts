@@ -6,8 +6,9 @@ import { type Frame, HOUR_MS, MINUTE_MS } from './trip-share.ts'
 const DAY_MINUTES = 1_440
 /** Widths of a daily window that are tried, minutes, and how many of them go round the clock. */
 const WIDTHS = [10, 20, 40, 90, 180] as const
-/** Phase widths of a period that are tried, as shares of it. */
-const PHASE_WIDTHS = [0.06, 0.15] as const
+/** Into how many bins a period is cut, and how many neighbouring ones a window is. */
+const BINS = 33
+const BINS_WIDE = [2, 5] as const
 const VAGUE_MS = 20 * MINUTE_MS
 /** Fewer trips than this show no period. */
 const LEAST_TRIPS_FOR_PERIOD = 4
@@ -69,37 +70,77 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
   const windows: ExposureWindow[] = []
   const step = 0.04 / spanHours
   const steps = Math.ceil((1 - 1 / longest) / step)
+  const prior = 1 / (clocks.length * BINS_WIDE.length * (steps + 1) * BINS)
+  const counts = new Uint32Array(2 * BINS)
   for (const [c, at] of clocks.entries()) {
+    const exact = at.filter((_, i) => !isVague[i])
+    // phases are turned on from one frequency to the next, which is cheaper than to take them anew
+    const phases = Float64Array.from(exact, (t) => turn(t / longest))
+    const turns = Float64Array.from(exact, (t) => turn(t * step))
     for (let s = 0; s <= steps; s++) {
+      counts.fill(0)
+      for (let i = 0; i < phases.length; i++) {
+        counts[(phases[i]! * BINS) | 0]! += 1
+        const next = phases[i]! + turns[i]!
+        phases[i] = next >= 1 ? next - 1 : next
+      }
       const frequency = 1 / longest + s * step
-      const hours = 1 / frequency
-      if (isDaily(hours, spanHours)) continue
-      for (const width of PHASE_WIDTHS) {
-        const phases = Math.round(2 / width)
-        for (let k = 0; k < phases; k++) {
-          const start = k / phases
-          let hits = 0
-          const isIn = (t: number, i: number): boolean => !isVague[i] && fraction(t * frequency - start) < width
-          at.forEach((t, i) => {
-            if (isIn(t, i)) hits++
-          })
-          // a window with no more trips than its share is no evidence for the period; its prior is kept all the same
-          if (hits < 3 || hits < 3 * width * known) continue
-          const inside = Float64Array.from(at, (t, i) => (isVague[i] ? width : isIn(t, i) ? 1 : 0))
-          windows.push({
-            key: `${hours.toFixed(3)}h@${start.toFixed(2)}+${width}${c === 1 ? ' under supply' : ''}`,
-            words: `in the same ${Math.round(width * 100)} % of a period of ${hours.toFixed(1)} h${c === 1 ? ' under supply' : ''}`,
-            prior: 1 / (clocks.length * PHASE_WIDTHS.length * (steps + 1) * phases),
-            hoursBy: frame.habits.map(() => frame.hours * width),
-            insideHours: frame.hours * width,
-            inside,
-            weightsBy: frame.habits.map(() => inside),
-          })
+      if (isDaily(1 / frequency, spanHours)) continue
+      counts.copyWithin(BINS, 0, BINS)
+      for (const wide of BINS_WIDE) {
+        // a window with no more trips than its share is no evidence for the period; its prior is kept all the same
+        const least = Math.max(3, (3 * wide * known) / BINS)
+        let hits = 0
+        for (let k = 0; k < wide - 1; k++) hits += counts[k]!
+        for (let k = 0; k < BINS; k++) {
+          hits += counts[k + wide - 1]!
+          if (hits >= least)
+            windows.push(phaseWindow(frame, at, isVague, { frequency, from: k, wide, prior, underSupply: c === 1 }))
+          hits -= counts[k]!
         }
       }
     }
   }
   return windows
+}
+
+interface Phase {
+  readonly frequency: number
+  /** First bin and number of bins. */
+  readonly from: number
+  readonly wide: number
+  readonly prior: number
+  readonly underSupply: boolean
+}
+
+function phaseWindow(
+  frame: Frame,
+  at: readonly number[],
+  isVague: readonly boolean[],
+  { frequency, from, wide, prior, underSupply }: Phase,
+): ExposureWindow {
+  const hours = 1 / frequency
+  const width = wide / BINS
+  const inside = Float64Array.from(at, (t, i) => {
+    if (isVague[i]) return width
+    const bin = Math.min(BINS - 1, Math.floor(turn(t * frequency) * BINS))
+    return (bin - from + BINS) % BINS < wide ? 1 : 0
+  })
+  const clock = underSupply ? ' under supply' : ''
+  return {
+    key: `${hours.toFixed(3)}h@${(from / BINS).toFixed(2)}+${width.toFixed(2)}${clock}`,
+    words: `in the same ${Math.round(width * 100)} % of a period of ${hours.toFixed(1)} h${clock}`,
+    prior,
+    hoursBy: frame.habits.map(() => frame.hours * width),
+    insideHours: frame.hours * width,
+    inside,
+    weightsBy: frame.habits.map(() => inside),
+  }
+}
+
+/** A number of turns less the whole ones, [0, 1). */
+function turn(turns: number): number {
+  return Math.min(turns - Math.floor(turns), 1 - Number.EPSILON)
 }
 
 /** Whole multiples of a day, and a day in up to so many equal parts, belong to the clock on the wall. */
@@ -166,10 +207,6 @@ function running(minutes: Float64Array): Float64Array {
 
 function between(sums: Float64Array, from: number, to: number): number {
   return sums[to]! - sums[from]!
-}
-
-function fraction(x: number): number {
-  return x - Math.floor(x)
 }
 
 /** Minutes of the day as HH:MM. */

@@ -1,5 +1,5 @@
 import { type LocalClock, localClock } from '../../timeline/local-clock.ts'
-import { contains, intersect, measureWithin, NO_SPANS, type Spans, totalMs, union } from '../../timeline/spans.ts'
+import { contains, measureWithin, NO_SPANS, overlapMs, type Spans, totalMs, union } from '../../timeline/spans.ts'
 import type { Timeline } from '../../timeline/timeline.ts'
 
 const MINUTE_MS = 60_000
@@ -72,7 +72,7 @@ function habitOf(
   livelyTime: Spans,
   isLively: (minuteOfDay: number) => boolean,
 ): Habit {
-  const lively = (spans: Spans): number => SLACK * totalMs(spans) + (1 - SLACK) * totalMs(intersect(spans, livelyTime))
+  const lively = (spans: Spans): number => SLACK * totalMs(spans) + (1 - SLACK) * overlapMs(spans, livelyTime)
   const scale = totalMs(energised) / lively(energised)
   let logDensity = 0
   for (const trip of trips) {

@@ -2,6 +2,7 @@ import { laggedCorrelation } from '../../statistics/correlation.ts'
 import { quantile } from '../../statistics/quantile.ts'
 import { lowerBound, type Series } from '../../timeline/series.ts'
 import type { Spans } from '../../timeline/spans.ts'
+import { medianInPlace } from '../levels.ts'
 import type { ExposureWindow } from '../line-up.ts'
 import { heldAbove, thinned } from './held.ts'
 import { withKicks } from './kicks.ts'
@@ -29,19 +30,14 @@ export interface Drying {
  */
 export function dryings(rain: Series | null, remainder: Series | null): Drying[] {
   if (rain === null || rain.t.length < 3) return []
-  const list: Drying[] = []
-  for (const halfLife of HALF_LIVES) {
+  const levels = LAGS.map((lag) => (remainder === null ? null : levelsAfter(rain.t, remainder, lag * HOUR_MS)))
+  return HALF_LIVES.flatMap((halfLife) => {
     const wetness = antecedent(rain, halfLife)
-    for (const lag of LAGS) {
-      list.push({
-        halfLife,
-        lag,
-        wetness,
-        correlation: remainder === null ? 0 : correlationAt(wetness, remainder, lag * HOUR_MS),
-      })
-    }
-  }
-  return list
+    return LAGS.map((lag, l): Drying => {
+      const level = levels[l]
+      return { halfLife, lag, wetness, correlation: level ? correlationOf(wetness.v, level) : 0 }
+    })
+  })
 }
 
 /**
@@ -76,18 +72,24 @@ export function rainWindows(frame: Frame, laws: readonly Drying[]): ExposureWind
   return normalised(windows)
 }
 
-/** Pearson correlation of a level with a wetness `lag` ms earlier, at the wetness's own times. */
-function correlationAt(wetness: Series, level: Series, lag: number): number {
+/** Median level of the hour that begins `lag` ms after each instant; NaN where the log is silent. */
+function levelsAfter(instants: Float64Array, level: Series, lag: number): Float64Array {
+  return instants.map((t) => {
+    const a = lowerBound(level.t, t + lag)
+    const b = lowerBound(level.t, t + lag + HOUR_MS)
+    return b - a < 5 ? Number.NaN : medianInPlace(Float64Array.from(thinned(level.v.subarray(a, b), 61)))
+  })
+}
+
+/** Pearson correlation of a wetness with the level that followed it; 0 with too little to see. */
+function correlationOf(wetness: Float64Array, level: Float64Array): number {
   const xs: number[] = []
   const ys: number[] = []
-  for (let i = 0; i < wetness.t.length; i++) {
-    const from = wetness.t[i]! + lag
-    const a = lowerBound(level.t, from)
-    const b = lowerBound(level.t, from + HOUR_MS)
-    if (b - a < 5) continue
-    xs.push(wetness.v[i]!)
-    ys.push(quantile(thinned(level.v.subarray(a, b), 61), 0.5))
-  }
+  wetness.forEach((x, i) => {
+    if (Number.isNaN(level[i])) return
+    xs.push(x)
+    ys.push(level[i]!)
+  })
   return xs.length < 12 ? 0 : (laggedCorrelation(xs, ys, 0) ?? 0)
 }
 

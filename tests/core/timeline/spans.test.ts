@@ -8,6 +8,7 @@ import {
   eachSpan,
   intersect,
   measureWithin,
+  overlapMs,
   type Spans,
   shift,
   spanAt,
@@ -35,6 +36,16 @@ const same = (set: Spans, wanted: (i: number) => boolean, from = 0, to = END): v
   for (let i = 1; i < set.length; i++) expect(set[i]).toBeGreaterThan(set[i - 1]!)
   expect([...integers(set)]).toEqual(Array.from({ length: to - from }, (_, k) => from + k).filter(wanted))
 }
+
+describe('overlapMs', () => {
+  it('is the length of what two sets share', () => {
+    fc.assert(
+      fc.property(spans, spans, (a, b) => {
+        expect(overlapMs(a, b)).toBe(totalMs(intersect(a, b)))
+      }),
+    )
+  })
+})
 
 describe('spansOf', () => {
   it('sorts, merges what overlaps or touches, drops what is empty or backwards', () => {
