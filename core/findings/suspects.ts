@@ -9,6 +9,7 @@ import { type ExposureWindow, type LineUp, lineUp, type Standing } from './line-
 import { logReason } from './log-reasons.ts'
 import { type LogView, logView } from './log-view.ts'
 import { type Preference, preferences } from './preference.ts'
+import { priorReason, rateReason } from './preferring/rate-reason.ts'
 import { ODDS } from './prior-odds.ts'
 import { notedReason, reasonsOf } from './reasons.ts'
 import { speakingCourse } from './speaking-course.ts'
@@ -161,14 +162,15 @@ function unjudgedSuspect(timeline: Timeline, thing: Thing, none: number): Suspec
     : `Nobody knows when ${thing.label} was on, so nothing can be said about it. That does not clear it.`
   const contrast: Reason = { text, method: 'contrast of exposures', figures: { changes: thing.changes.length } }
   const noted = notedReason(timeline, thing.of)
+  const probability = (none * odds) / (1 + odds)
   return {
     of: thing.of,
     label: thing.label,
-    probability: rounded((none * odds) / (1 + odds)),
+    probability: rounded(probability),
     share: 0,
     grade: 'unjudged',
     role: 'trigger',
-    because: noted === null ? [contrast] : [contrast, noted],
+    because: [contrast, noted ?? priorReason(probability)],
     next:
       thing.kind === 'circuit'
         ? `Switch ${thing.label} off for some days, in both poles.`
@@ -198,6 +200,7 @@ function noneSuspect(frame: Frame, weighed: LineUp, measured: Measured, log: Log
         figures: { trips: n, energisedHours: rounded(frame.hours) },
       },
       ...(byLog === null ? [] : [byLog]),
+      rateReason(n, frame.hours),
     ],
     next: n === 0 ? 'Leave the logger on site.' : 'Leave the logger longer, and log what is not logged yet.',
   }
