@@ -18,6 +18,8 @@ const SETS = 199
 const INSIDE = 0.9
 /** A stretch counts when at least this part of the trips has a level there. */
 const PRESENT = 0.5
+/** A rise over the hour that is told, mA. */
+const LEAST_RISE_MA = 0.5
 const METHOD =
   'superposed epochs (Chree 1913); band: nine of ten sets of as many times without a trip, at the same hours of other days, stay inside throughout'
 
@@ -150,7 +152,7 @@ function textOf(n: number, axis: EpochAxis, mean: Float64Array, band: Band | nul
   let since = last + 1
   while (since > 0 && (Number.isNaN(mean[since - 1]!) || isOut(since - 1))) since--
   if (since > last) {
-    return `${laid}: up to the trip the leakage stays within what is usual at those hours (${current(Math.abs(off))} mA ${side} its middle just before). There is no common warning.`
+    return `${laid}: up to the trip the leakage stays within what is usual at those hours (${current(Math.abs(off))} mA ${side} its middle just before). There is no common warning.${everyDay(mean, band, last)}`
   }
   const ago = axis.before[since]! / 60_000
   const from =
@@ -160,4 +162,14 @@ function textOf(n: number, axis: EpochAxis, mean: Float64Array, band: Band | nul
         ? `from ${Math.round(ago)} minutes before on`
         : `in the last ${Math.max(1, Math.round(axis.before[since]! / 1_000))} seconds`
   return `${laid}: the leakage stands ${side} what is usual at those hours ${from}, by ${current(Math.abs(off))} mA just before the trip.`
+}
+
+/** The level rises before trips, but so it does at those hours without one: a timed load that is not alone to blame, or that trips seldom. */
+function everyDay(mean: Float64Array, band: Band, last: number): string {
+  const first = mean.findIndex((ma) => !Number.isNaN(ma))
+  const rise = band.middle[last]! - band.middle[first]!
+  const usual = Math.max(LEAST_RISE_MA, band.high[first]! - band.middle[first]!)
+  return rise > usual
+    ? ` It rises by ${current(mean[last]! - mean[first]!)} mA over the hour, but at those hours it does so without a trip as well.`
+    : ''
 }

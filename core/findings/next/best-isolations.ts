@@ -8,7 +8,6 @@ const DAYS = [1, 2, 3, 4, 5, 6, 7, 8, 9, 10, 12, 14, 17, 21, 24, 28] as const
 export const LONGEST_DAYS = 28
 /** Less doubt than this about a thing is not worth a day without it. */
 const LEAST_DOUBT = 0.02
-const MOST_CERTAIN = 0.999
 /** At least this part of what an isolation may take away must have a known place. */
 const PLACED = 0.6
 /** An isolation that settles less likely than this is no advice. */
@@ -52,7 +51,7 @@ export function bestIsolations(
     })
     .filter(({ isolation, prior }) => {
       const placed = placedGuilt(site, isolation, sets)
-      return placed >= LEAST_DOUBT && placed >= PLACED * prior && prior <= MOST_CERTAIN
+      return placed >= LEAST_DOUBT && placed >= PLACED * prior
     })
   looked.sort((a, b) => b.gain - a.gain || compare(a.isolation, b.isolation))
   const proposals = looked.slice(0, SHORT_LIST).map(({ isolation, cases, prior }) => {

@@ -33,10 +33,15 @@ function what({ days, trial, prior }: Proposal, things: readonly Thing[], belief
   const weekly = ((belief.shape - JEFFREYS.shape) / belief.rate) * 168
   const settled = `whether ${which} a part in the trips`
   const settles =
-    trial.settles >= SETTLED
-      ? `with odds of ${odds(trial.settles)} that settles ${settled}`
-      : `that settles ${settled} with odds of only ${odds(trial.settles)}`
-  const after = `Quiet throughout would make that ${odds(trial.ifQuiet)} (now ${odds(prior)}), a trip on the first day ${odds(trial.ifTrip)}.`
+    prior >= SETTLED
+      ? `that puts it to the proof, with odds of ${odds(trial.settles)} of a clear answer`
+      : trial.settles >= SETTLED
+        ? `with odds of ${odds(trial.settles)} that settles ${settled}`
+        : `that settles ${settled} with odds of only ${odds(trial.settles)}`
+  const after =
+    prior >= SETTLED
+      ? `A trip on the first day would bring its probability from ${odds(prior)} down to ${odds(trial.ifTrip)}.`
+      : `Quiet throughout would make that ${odds(trial.ifQuiet)} (now ${odds(prior)}), a trip on the first day ${odds(trial.ifTrip)}.`
   const chance = `At ${figure(weekly)} trips a week so long a quiet spell comes by chance once in ${figure(1 / trial.quietByChance)} times.`
   return `for ${countOf(days, 'day')}: ${settles}. ${after} ${chance}`
 }
@@ -48,7 +53,7 @@ function neutral({ trial, byBreaker }: Proposal): string {
 }
 
 function odds(p: number): string {
-  return p > 0.995 ? '0.99' : p < 0.005 ? 'below 0.01' : p.toFixed(2)
+  return p > 0.995 ? 'over 0.99' : p < 0.005 ? 'below 0.01' : p.toFixed(2)
 }
 
 /** The label; a circuit without one is called by its way. */

@@ -15,7 +15,7 @@ export function ownTest(timeline: Timeline, suspect: Suspect, belief: GammaBelie
   const days = Math.ceil(stayFor(belief, TRIPS) / 24)
   const wait =
     Number.isFinite(days) && days <= 60
-      ? ` Three more trips, which tell for certain, take about ${countOf(days, 'day')}.`
+      ? ` Three more trips, which would tell more, take about ${countOf(days, 'day')}.`
       : ''
   return { isolate: null, days: 0, settles: 0, text: `${textOf(timeline, suspect)}${wait}` }
 }

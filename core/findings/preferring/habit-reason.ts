@@ -21,14 +21,18 @@ export function habitReason(p: Preference): Reason | null {
   const differ = Math.abs(like.expected - plain)
   const ratio = Math.max(like.expected, plain) / Math.max(1e-9, Math.min(like.expected, plain))
   if (differ < APART_TRIPS || ratio < APART) return null
-  return { text: textOf(like, plain), method: methodOf(like), figures: figuresOf(like, plain) }
+  return {
+    text: textOf(like, plain, /^(load|circuit):/.test(p.of)),
+    method: methodOf(like),
+    figures: figuresOf(like, plain),
+  }
 }
 
-function textOf(like: Stratified, plain: number): string {
+function textOf(like: Stratified, plain: number, isSwitched: boolean): string {
   const hours = like.strata === 'hour' ? 'hours of the day' : 'hours of the week'
   const expected = `${figure(Number(like.expected.toPrecision(2)))} of ${like.trips} would be expected`
   if (like.telling === 0)
-    return `It held at the same ${hours} every time, so those hours alone explain the trips as well: only switching it at other hours would tell.`
+    return `It held at the same ${hours} every time, so those hours alone explain the trips as well${isSwitched ? ': only switching it at other hours would tell' : ''}.`
   if (like.expected < plain)
     return like.p < SURE
       ? `It seldom held at the ${hours} at which the trips came: ${expected}, so that its ${number(like.inside)} weigh more (${pValue(like.p)}).`
