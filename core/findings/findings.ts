@@ -15,7 +15,7 @@ import { patterns } from './patterns/patterns.ts'
 import { proof } from './proof.ts'
 import { runProfiles } from './run-profiles.ts'
 import { spreadFindings } from './spreading/spread-findings.ts'
-import { suspects } from './suspects.ts'
+import { type SpokenWindow, suspects, type Weighed } from './suspects.ts'
 import { timedStepOf } from './timed/timed-step.ts'
 import { tripFindings } from './trips.ts'
 import { countOf, sentence } from './words.ts'
@@ -59,11 +59,16 @@ export function findings(evidence: Evidence): Findings {
       budget: lines,
       standingMa: room.standingMa?.p50 ?? null,
     }),
-    proof: proof(timeline, trips),
+    proof: proof(timeline, trips, leadingWindow(weighed)),
     epochs: epochs(timeline),
     spread: spreadFindings(timeline, lines, room),
     notes: notesOf(timeline, weighed.frame.trips.length),
   }
+}
+
+/** When the first suspect of the line-up may act, where that is a set of time. */
+function leadingWindow({ suspects: list, windows }: Weighed): SpokenWindow | null {
+  return windows.get(list[0]?.of ?? '') ?? null
 }
 
 /** What was merged, narrowed or set aside, times on the site's clock. */

@@ -8,6 +8,7 @@ import { episodes } from './episodes.ts'
 import { levelChange } from './proving/level-change.ts'
 import { newCause } from './proving/new-cause.ts'
 import { rateChange, type Sides, sidesOf } from './proving/rate-change.ts'
+import type { SpokenWindow } from './suspects.ts'
 import { countOf, current, duration, figure, nameOf, rounded, sentence } from './words.ts'
 
 const HOUR_MS = 3_600_000
@@ -40,9 +41,14 @@ interface Verdict {
  * Is it fixed (methods.md §10): energised hours without a trip since the latest remedy, the chance of that spell had nothing
  * changed, and the hours still needed for 95 %; the rate before is a gamma–Poisson belief with Jeffreys' prior. Beside it the rates and
  * the standing leakage before and after, signs of a new cause, and every remedy set against the time since the one before it. Hours
- * without supply never count. `found` are the findings of the timeline's trips, in their order.
+ * without supply never count. `found` are the findings of the timeline's trips, in their order,
+ * `leading` the time in which the first suspect may act.
  */
-export function proof(timeline: Timeline, found: readonly TripFinding[] = []): Proof {
+export function proof(
+  timeline: Timeline,
+  found: readonly TripFinding[] = [],
+  leading: SpokenWindow | null = null,
+): Proof {
   const remedies = ownRemedies(timeline)
   const latest = remedies.at(-1)
   if (latest === undefined) return NOTHING
@@ -53,7 +59,7 @@ export function proof(timeline: Timeline, found: readonly TripFinding[] = []): P
   const verdict = verdictOf(timeline, sides, timeline.to)
   const listed = [...remedies.keys()].slice(-MOST_LISTED).map((i) => oneByOne(timeline, trips, remedies, i))
   const level = listed.at(-1)?.level ?? null
-  const cause = newCause(timeline, { sides, of: latest.of ?? null, at, to: timeline.to, level, found })
+  const cause = newCause(timeline, { sides, of: latest.of ?? null, at, to: timeline.to, level, found, leading })
   const texts = [
     verdict.text,
     acrossText(sides),

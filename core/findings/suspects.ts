@@ -23,6 +23,9 @@ import { nameOf, rounded, sentence } from './words.ts'
 /** Below this a suspect with contrast is cleared; grades of methods.md §8. */
 const CLEARED = 0.02
 
+/** The time of a window, and how it is spoken of. */
+export type SpokenWindow = NonNullable<ExposureWindow['when']> & { readonly words: string }
+
 /** The line-up in words, and what it rests on. */
 export interface Weighed {
   readonly suspects: Suspect[]
@@ -31,7 +34,7 @@ export interface Weighed {
   readonly frame: Frame
   readonly sets: LineUp['sets']
   /** The time of each suspect's likeliest window. */
-  readonly windows: ReadonlyMap<string, NonNullable<ExposureWindow['when']>>
+  readonly windows: ReadonlyMap<string, SpokenWindow>
 }
 
 /**
@@ -64,7 +67,9 @@ export function suspects(timeline: Timeline, measured: Measured): Weighed {
   const all = [...judged, ...unjudged, none]
   all.sort((a, b) => b.probability - a.probability || (a.of < b.of ? -1 : 1))
   const windows = new Map(
-    tested.flatMap(({ of, window: { when } }) => (when === undefined ? [] : [[of, when] as const])),
+    tested.flatMap(({ of, window: { when, words } }) =>
+      when === undefined ? [] : [[of, { ...when, words }] as const],
+    ),
   )
   return { suspects: all, log, frame, sets: weighed.sets, windows }
 }

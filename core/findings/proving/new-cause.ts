@@ -3,7 +3,9 @@ import { fisherExact } from '../../statistics/fisher-exact.ts'
 import { mannKendall } from '../../statistics/mann-kendall.ts'
 import { theilSen } from '../../statistics/theil-sen.ts'
 import { stateBefore } from '../../timeline/exposure.ts'
+import { contains } from '../../timeline/spans.ts'
 import type { Timeline, TimelineTrip } from '../../timeline/timeline.ts'
+import type { SpokenWindow } from '../suspects.ts'
 import { countOf, current, figure, nameOf, pValue, rounded } from '../words.ts'
 import { dayLevels } from './level-change.ts'
 import type { Sides } from './rate-change.ts'
@@ -23,15 +25,17 @@ interface Given {
   readonly level: LevelChange | null
   /** Findings of trips by position in the timeline. */
   readonly found: readonly TripFinding[]
+  /** When the first suspect may act; null where that is no set of time. */
+  readonly leading: SpokenWindow | null
 }
 
 /**
  * A sign that something else makes the device trip since a remedy: trips while the repaired thing was off, trips that look
- * unlike those before (Fisher's exact test of their courses), or a level that rose after it. The first that holds; null for none, which
+ * unlike those before (Fisher's exact test of their courses, and of the time in which the first suspect may act), or a level that rose after it. The first that holds; null for none, which
  * proves nothing.
  */
 export function newCause(timeline: Timeline, given: Given): Reason | null {
-  return whileOff(timeline, given) ?? unlikeBefore(timeline, given) ?? rising(timeline, given)
+  return whileOff(timeline, given) ?? unlikeBefore(timeline, given) ?? elsewhere(given) ?? rising(timeline, given)
 }
 
 function whileOff(timeline: Timeline, { sides, of }: Given): Reason | null {
@@ -78,6 +82,26 @@ function unlikeBefore(timeline: Timeline, { sides, found }: Given): Reason | nul
     text: `The trips since the remedy look different: ${best.a} of ${after.length} came ${best.words}, before it ${best.b} of ${before.length} (${pValue(best.p)}). A new cause is likely.`,
     method: "courses before and after, Fisher's exact test (1935)",
     figures: { after: after.length, afterSo: best.a, before: before.length, beforeSo: best.b, p: rounded(best.p) },
+  }
+}
+
+/** Trips within the time of the first suspect, before and after: once it was, now it is not, or the other way round. */
+function elsewhere({ sides, leading }: Given): Reason | null {
+  if (leading === null) return null
+  const counts = (trips: readonly TimelineTrip[]): readonly [number, number] => {
+    const known = trips.filter((t) => t.from === t.to && contains(leading.known, t.from - 1))
+    const inside = known.filter((t) => contains(leading.inside, t.from - 1)).length
+    return [inside, known.length - inside]
+  }
+  const [before, after] = [counts(sides.before), counts(sides.after)]
+  const [nb, na] = [before[0] + before[1], after[0] + after[1]]
+  if (nb === 0 || na === 0) return null
+  const { pTwoSided: p } = fisherExact([before, after])
+  if (!(p < UNLIKE)) return null
+  return {
+    text: `Before the remedy ${before[0]} of ${nb} trips fell ${leading.words}, since then ${after[0]} of ${na} (${pValue(p)}): hardly the same cause.`,
+    method: "time of the first suspect before and after, Fisher's exact test (1935)",
+    figures: { before: nb, beforeInside: before[0], after: na, afterInside: after[0], p: rounded(p) },
   }
 }
 

@@ -190,6 +190,18 @@ describe('a new cause', () => {
     ).toBeNull()
   })
 
+  it('shows when the trips no longer fall into the time of the first suspect', () => {
+    const at = [10, 30, 50, 70, 90, 100, 200, 230, 260]
+    const given = timelineOf({ days: 20, trips: trips(at), remedies: [remedy(120)] })
+    const inside = spansOf(at.slice(0, 6).map((h) => [START + (h - 1) * HOUR, START + h * HOUR] as const))
+    const known = given.energised
+    const found = proof(given, [], { inside, known, words: 'while it ran' })
+    // Fisher: one table of 9! / (6! 3!) = 84
+    expect(found.newCause!.figures.p).toBeCloseTo(1 / 84, 6)
+    expect(found.newCause!.text).toMatch(/^Before the remedy 6 of 6 trips fell while it ran, since then 0 of 3/)
+    expect(proof(given, [], { inside: known, known, words: 'always' }).newCause).toBeNull()
+  })
+
   it('shows when the level rises after the remedy', () => {
     const n = 20 * 24
     const t = Array.from({ length: n }, (_, i) => START + i * HOUR)
