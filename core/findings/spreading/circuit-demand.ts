@@ -3,8 +3,8 @@ import { hoursOff, hoursOn } from '../../timeline/exposure.ts'
 import type { Timeline } from '../../timeline/timeline.ts'
 
 /**
- * What each circuit brings to the device it hangs on: its own line of the budget, or, where that is less or missing, its loads' lines
- * weighted by the share of the time they run. A circuit of which neither is known stays without a figure. In the order of the sheet.
+ * What each circuit brings to the device it hangs on: what stays of it while none of its loads runs and its loads' lines weighted by the
+ * share of the time they run; without the former its own line of the budget, or its loads alone where that is less or missing. A circuit of which neither is known stays without a figure. In the order of the sheet.
  */
 export function circuitDemand(timeline: Timeline, lines: readonly BudgetLine[]): BudgetLine[] {
   const byOf = new Map(lines.map((line) => [line.of, line]))
@@ -35,6 +35,12 @@ export function circuitDemand(timeline: Timeline, lines: readonly BudgetLine[]):
         return known === 0
           ? { ...base, note: 'No figure.' }
           : { ...base, ma, low: 0, high, note: 'From its loads alone: at least so much.' }
+      if (base.baseMa !== undefined) {
+        // without its loads it brings this; they come on top while they run
+        const still = Math.max(0, base.baseMa)
+        const half = (base.high ?? base.ma) - base.ma
+        return { ...base, ma: still + ma, low: 0, high: still + half + high }
+      }
       return { ...base, ma: Math.max(base.ma, ma), high: Math.max(base.high ?? base.ma, high) }
     })
 }

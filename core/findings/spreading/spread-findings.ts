@@ -56,7 +56,10 @@ export function spreadFindings(timeline: Timeline, lines: readonly BudgetLine[],
     return { ...base, plans: [], alone, text: tooFew(timeline, judged.length) }
   }
   const plans = DEVICES.filter((n) => n <= judged.length).map((n) => planOf(timeline, demand, n))
-  return { ...base, plans, alone, text: textOf(timeline, base, plans) }
+  const neutral = judged.some((line) => line.neutralStays === true)
+    ? ' Figures of circuits whose breaker opens the line only leave out what leaks from their neutral.'
+    : ''
+  return { ...base, plans, alone, text: `${textOf(timeline, base, plans)}${neutral}` }
 }
 
 function planOf(timeline: Timeline, demand: readonly BudgetLine[], n: number): SpreadPlan {

@@ -74,6 +74,11 @@ describe('spreadFindings', () => {
     expect(spreadFindings(timelineOf({}), [], standing(null)).text).toMatch(/only one circuit on this device/)
   })
 
+  it('says what figures of single-pole breakers leave out', () => {
+    const open = lines.map((l) => ({ ...l, neutralStays: true }))
+    expect(spreadFindings(board(), open, standing(15)).text).toMatch(/leave out what leaks from their neutral/)
+  })
+
   it('does not say that a low level asks for it', () => {
     expect(
       spreadFindings(
@@ -92,6 +97,11 @@ describe('circuitDemand', () => {
     const [found] = circuitDemand(timeline, [none('circuit:1'), line('load:mixer', 4, 1)])
     // a quarter of the week
     expect(found).toMatchObject({ of: 'circuit:1', ma: 1, high: 1.25 })
+    // what stays of the circuit without its loads, and a quarter of the mixer
+    const still = { ...line('circuit:1', 3, 0.2), baseMa: 2 }
+    const [whole] = circuitDemand(timeline, [still, line('load:mixer', 4, 1)])
+    expect(whole!.ma).toBeCloseTo(3, 9)
+    expect(whole!.high).toBeCloseTo(2 + 0.2 + 1.25, 9)
     expect(circuitDemand(timeline, [line('circuit:1', 3), line('load:mixer', 4)])[0]).toMatchObject({ ma: 3 })
   })
 })
