@@ -44,7 +44,7 @@ const LEAST_CROSSOVER_MS = 21 * 86_400_000
 /** Fewer telling trips than this make no case-crossover. */
 const LEAST_TELLING = 3
 /** Windows of all suspects that shifts look at; more would cost too much. */
-const MOST_WINDOWS = 240
+const MOST_WINDOWS = 200
 
 /**
  * Do trips prefer an exposure (methods.md §5)? Exact conditional tests of rates inside against outside (Przyborowski &

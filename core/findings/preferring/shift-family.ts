@@ -16,6 +16,7 @@ const POINTS = 4
 /** Shifts: as many as this many looks at a trip allow, within limits. */
 const LOOKS = 40_000
 const LEAST_SHIFTS = 199
+const SHORT = 64
 const MOST_SHIFTS = 999
 
 /**
@@ -124,7 +125,9 @@ function fill(raster: Uint8Array, window: Spans, axis: Axis): number {
     const from = Math.max(done, Math.floor(axis(window[i]!)))
     const to = Math.min(raster.length, Math.ceil(axis(window[i + 1]!)))
     if (to <= from) continue
-    raster.fill(1, from, to)
+    // a call for every short run costs more than the cells themselves
+    if (to - from > SHORT) raster.fill(1, from, to)
+    else for (let c = from; c < to; c++) raster[c] = 1
     marked += to - from
     done = to
   }
