@@ -161,7 +161,7 @@ describe('stratified', () => {
 })
 
 describe('a site with habits', () => {
-  it('accuses an innocent evening load no oftener than it says, where the plain test nearly always does', () => {
+  it('accuses an innocent evening load no oftener than it says, where the plain test mostly does', () => {
     // 200 sites, trips and an unrelated load both mostly in the evening; p <= 0.05 at most binomial(200, 0.05): 99.9 % below 21.
     let [plain, like] = [0, 0]
     const days = 21
@@ -183,7 +183,7 @@ describe('a site with habits', () => {
       if (binomialUpperTail(found.inside, 9, share, 1 - share) <= 0.05) plain++
       if (found.p <= 0.05) like++
     }
-    expect(plain).toBeGreaterThan(150)
+    expect(plain).toBeGreaterThan(100)
     expect(like).toBeLessThan(21)
   })
 })
