@@ -33,9 +33,11 @@ import { loadCurrentWindows, rainWindows, temperatureWindows } from './windows/w
 
 /** A device that opens too soon is fired by any sound load: how far the odds of all else fall then. */
 const UNDER_A_BAD_DEVICE = 0.001
-/** Odds of a device that a test, or its own trips, showed to open too soon: measured, not guessed. */
+/** Odds of a device that a test showed to open too soon: measured, not guessed. */
 const BAD_DEVICE = 600
 
+/** Trips after a visible rise that speak for a device that opens too soon. */
+const LEAST_RISEN = 3
 /** What takes up headroom worth naming, mA. */
 const PARTNER_MA = 0.8
 
@@ -123,7 +125,7 @@ export function candidatesOf(
   if (tooSensitive) add('device', BAD_DEVICE, 'local', [...scaled(anyLevel, 0.5), ...always(frame, 'at any time', 0.5)])
   else {
     add('standing', standingOdds(log, measured.headroom), 'local', level)
-    if (mayBeTooSensitive(timeline, measured)) add('device', ODDS.device, 'local', anyLevel)
+    add('device', untestedDeviceOdds(timeline, measured, courses), 'local', anyLevel)
   }
   add('supply', ODDS.supply, 'supply', supplyWindows(frame))
   const irregular = unlisted.length === 0 ? 1 : isAbnormal(log) ? ABNORMAL : 4
@@ -211,20 +213,26 @@ function unlistedWindows(frame: Frame, log: LogView, rainLifts: boolean): Exposu
   return withKicks(frame, 'unexplained', words, 0.5, [{ inside: unexplained.excursions, weight: 1 }], all)
 }
 
-/** Nobody has tested it, and the leakage never came near half its rating: only the level at its trips can tell. */
-function mayBeTooSensitive(timeline: Timeline, { headroom }: Measured): boolean {
+/**
+ * Odds that a device which nobody has tested opens too soon: where the leakage never came near half its rating only the
+ * level at its trips can tell, the more so when it opened several times after a rise of its own. 0 otherwise.
+ */
+function untestedDeviceOdds(
+  timeline: Timeline,
+  { headroom }: Measured,
+  courses: readonly TripFinding['course'][],
+): number {
   const max = headroom.standingMa?.max
-  return headroom.tripMa.basis !== 'ramp-tests' && max !== undefined && max < 0.9 * 0.5 * timeline.rcd.ratedMa
+  if (headroom.tripMa.basis === 'ramp-tests' || max === undefined || max >= 0.9 * half(timeline)) return 0
+  const risen = courses.filter((course) => course === 'step' || course === 'creep').length
+  return ODDS.device * (risen >= LEAST_RISEN ? 10 : 1)
 }
 
-/**
- * A device that opens below 0.5 IΔn, the current at which the standards forbid a trip (IEC 61008-1, IEC 61009-1, from
- * memory): by a ramp test, or because it opened at least three times after a visible rise, and the leakage never came
- * near that current.
- */
-function isTooSensitive(timeline: Timeline, { headroom, trips }: Measured): boolean {
-  const half = 0.5 * timeline.rcd.ratedMa
-  if (headroom.tripMa.basis === 'ramp-tests') return headroom.tripMa.high < half
-  const risen = trips.filter((t) => t.levelMa !== null && (t.course === 'step' || t.course === 'creep'))
-  return risen.length >= 3 && (headroom.standingMa?.max ?? half) < 0.9 * half
+/** A ramp test below 0.5 IΔn, the current at which the standards forbid a trip (IEC 61008-1, IEC 61009-1, from memory). */
+function isTooSensitive(timeline: Timeline, { headroom }: Measured): boolean {
+  return headroom.tripMa.basis === 'ramp-tests' && headroom.tripMa.high < half(timeline)
+}
+
+function half(timeline: Timeline): number {
+  return 0.5 * timeline.rcd.ratedMa
 }

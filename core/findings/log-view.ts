@@ -3,7 +3,7 @@ import { median } from '../statistics/median.ts'
 import { quantile } from '../statistics/quantile.ts'
 import type { Series } from '../timeline/series.ts'
 import { joinSeries, sliceSeries } from '../timeline/series.ts'
-import { NO_SPANS, type Spans, union } from '../timeline/spans.ts'
+import { countSpans, NO_SPANS, type Spans, union } from '../timeline/spans.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import { followsCurrent, type Together } from './follows-current.ts'
 import { minuteLevels } from './minute-levels.ts'
@@ -25,6 +25,8 @@ export interface Lift {
    */
   readonly usual: number
   readonly top: number
+  /** Runs in which it leaked more than a sound thing does. */
+  readonly outsizedRuns: number
 }
 
 /** What the leakage log says that bears on every suspect; computed once. Nulls without a log. */
@@ -57,8 +59,8 @@ const LEAST_RUNS = 3
 /** Things that must be seen before what is common to most of them can be told. */
 const LEAST_LIFTS = 4
 
-function liftOf(usualMa: number, topMa: number, roomMa: number): Lift {
-  return { usualMa, topMa, usual: usualMa / roomMa, top: topMa / roomMa }
+function liftOf(usualMa: number, topMa: number, roomMa: number, outsizedRuns: number): Lift {
+  return { usualMa, topMa, usual: usualMa / roomMa, top: topMa / roomMa, outsizedRuns }
 }
 
 /** The lifts with what is common to most of them taken off; as they are where there are too few to tell. */
@@ -99,7 +101,7 @@ export function logView(
     // of one or two runs the tenth largest is no figure: the usual one stands for it
     const top = profile !== undefined && profile.runs >= LEAST_RUNS ? profile.buckets : []
     const topMa = top.reduce((most, bucket) => Math.max(most, bucket.p90Ma), Math.max(usualMa, sure))
-    lifts.set(of, liftOf(usualMa, topMa, roomMa))
+    lifts.set(of, liftOf(usualMa, topMa, roomMa, countSpans(profile?.outsized ?? NO_SPANS)))
   }
   if (timeline.leakage === null || timeline.leakage.t.length < 100) {
     return {
@@ -123,7 +125,10 @@ export function logView(
   if (found !== null && found.follows !== null && found.apart >= LEAST_RUNS) {
     const seen = lifts.get(found.follows)
     const topMa = Math.max(seen?.topMa ?? 0, found.heightMa)
-    lifts.set(found.follows, liftOf(Math.max(seen?.usualMa ?? 0, found.heightMa), topMa, roomMa))
+    lifts.set(
+      found.follows,
+      liftOf(Math.max(seen?.usualMa ?? 0, found.heightMa), topMa, roomMa, seen?.outsizedRuns ?? 0),
+    )
   }
   const usualMa = headroom.standingMa?.p50 ?? 0
   const together = followsCurrent(timeline, minutes, usualMa, tripMa)

@@ -20,7 +20,7 @@ export const ODDS = {
   'load-current': 0.05,
   standing: 0.08,
   device: 0.03,
-  supply: 0.06,
+  supply: 0.12,
   unlisted: 0.06,
 } as const
 
@@ -69,7 +69,7 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
   const lift = log.lifts.get(thing.of)
   // where the usual level is near the trip current anyway, what a sound appliance leaks is the last step, not the cause
   const near = log.usualShare !== null && log.usualShare >= NEAR
-  const small = near && lift !== undefined && lift.topMa < OUTSIZED_MA ? 0.02 : 1
+  const small = near && lift !== undefined && lift.topMa < OUTSIZED_MA && lift.outsizedRuns === 0 ? 0.02 : 1
   return odds * liftFactor(lift) * small * (log.followsCurrent === true ? 0.002 : 1)
 }
 
@@ -77,14 +77,16 @@ export function thingOdds(timeline: Timeline, thing: Thing, log: LogView, isJudg
 export function liftFactor(lift: Lift | undefined): number {
   if (lift === undefined) return 1
   const found = REACH.find(({ usual, top }) => lift.usual >= usual && lift.top >= top)
-  const factor = found?.factor ?? NO_REACH
+  // a few runs that leaked far more than a sound thing does are no proof of innocence
+  const least = lift.outsizedRuns > 0 ? 1 : NO_REACH
+  const factor = Math.max(least, found?.factor ?? NO_REACH)
   return lift.topMa < OUTSIZED_MA ? Math.min(1, factor) : factor
 }
 
 /** The same for a load that nobody named and that keeps a schedule: its height is that of every run. */
 export function timedFactor(log: LogView, { heightMa }: TimedCluster): number {
   const reach = heightMa / log.roomMa
-  return liftFactor({ usualMa: heightMa, topMa: heightMa, usual: reach, top: 1.2 * reach })
+  return liftFactor({ usualMa: heightMa, topMa: heightMa, usual: reach, top: 1.2 * reach, outsizedRuns: 0 })
 }
 
 /** Whether the excursions that no named load accounts for are higher than any sound appliance leaks. */
@@ -125,5 +127,5 @@ export function wetTime(rain: number, laws: readonly Drying[]): Float64Array | n
 
 /** Neutral–earth: decided mostly by whether leakage follows the load current whoever carries it. */
 export function loadCurrentOdds(log: LogView): number {
-  return ODDS['load-current'] * (log.followsCurrent === true ? 15 : log.followsCurrent === false ? 0.2 : 1)
+  return ODDS['load-current'] * (log.followsCurrent === true ? 15 : log.followsCurrent === false ? 0.02 : 1)
 }

@@ -9,6 +9,8 @@ const WIDTHS = [10, 20, 40, 90, 180] as const
 /** Into how many bins a period is cut, and how many neighbouring ones a window is. */
 const BINS = 33
 const BINS_WIDE = [2, 5] as const
+/** A period must be seen in so many of its turns. */
+const LEAST_TURNS = 3
 const VAGUE_MS = 20 * MINUTE_MS
 /** Fewer trips than this show no period. */
 const LEAST_TRIPS_FOR_PERIOD = 4
@@ -29,6 +31,8 @@ export function clockWindows(frame: Frame): ExposureWindow[] {
   const hours = running(profile.hours)
   const lively = frame.habits.map((habit) => running(profile.hours.map((h, minute) => h * habit.at(minute))))
   const trips = profile.trips.map(running)
+  const wall = localClock(frame.timeline.sheet.timeZone)
+  const days = frame.trips.map(({ from }) => wall.dayNumber(from))
   const windows: ExposureWindow[] = []
   for (const width of WIDTHS) {
     const step = width / 2
@@ -38,6 +42,9 @@ export function clockWindows(frame: Frame): ExposureWindow[] {
       const exposed = between(hours, start, start + width)
       if (exposed <= 0.05) continue
       const inside = Float64Array.from(trips, (t) => between(t, start, start + width))
+      // several trips of one day are a burst, not a clock time
+      if (inside.filter((x) => x > 0.5).length >= 2 && new Set(days.filter((_, i) => inside[i]! > 0.5)).size < 2)
+        continue
       windows.push({
         key: `${clockText(start)}+${width}`,
         words: `between ${clockText(start)} and ${clockText(start + width)}`,
@@ -94,7 +101,7 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
         for (let k = 0; k < wide - 1; k++) hits += counts[k]!
         for (let k = 0; k < BINS; k++) {
           hits += counts[k + wide - 1]!
-          if (hits >= least)
+          if (hits >= least && turnsHeld(at, isVague, frequency, k, wide) >= LEAST_TURNS)
             windows.push(phaseWindow(frame, at, isVague, { frequency, from: k, wide, prior, underSupply: c === 1 }))
           hits -= counts[k]!
         }
@@ -102,6 +109,26 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
     }
   }
   return windows
+}
+
+/** In how many different turns of the period the trips of a window lie: a burst of trips is none. */
+function turnsHeld(
+  at: readonly number[],
+  isVague: readonly boolean[],
+  frequency: number,
+  from: number,
+  wide: number,
+): number {
+  const turns = new Set<number>()
+  at.forEach((t, i) => {
+    if (!isVague[i] && isInBins(t * frequency, from, wide)) turns.add(Math.floor(t * frequency - from / BINS))
+  })
+  return turns.size
+}
+
+function isInBins(turns: number, from: number, wide: number): boolean {
+  const bin = Math.min(BINS - 1, Math.floor(turn(turns) * BINS))
+  return (bin - from + BINS) % BINS < wide
 }
 
 interface Phase {
@@ -123,8 +150,7 @@ function phaseWindow(
   const width = wide / BINS
   const inside = Float64Array.from(at, (t, i) => {
     if (isVague[i]) return width
-    const bin = Math.min(BINS - 1, Math.floor(turn(t * frequency) * BINS))
-    return (bin - from + BINS) % BINS < wide ? 1 : 0
+    return isInBins(t * frequency, from, wide) ? 1 : 0
   })
   const clock = underSupply ? ' under supply' : ''
   return {
