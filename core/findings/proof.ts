@@ -24,7 +24,7 @@ const NOTHING: Proof = {
   quietHours: null,
   confidenceFixed: null,
   hoursTo95: null,
-  text: 'No remedy is recorded.',
+  text: 'No remedy is recorded. Write down what was done and when: the quiet time since is then weighed against the trips before.',
 }
 
 type Remedy = Timeline['remedies'][number]

@@ -161,16 +161,17 @@ function roleOf(of: string, probability: number, measured: Measured): Role {
 
 function unjudgedSuspect(timeline: Timeline, thing: Thing, none: number): Suspect {
   const odds = ODDS[thing.kind]
+  const name = nameOf(timeline, thing.of)
   const known = totalMs(knownOf(thing.state)) > 0
   const text = known
-    ? `${sentence(thing.label)} never changed its state while trips could happen, so switching says nothing about it. That does not clear it.`
-    : `Nobody knows when ${thing.label} was on, so nothing can be said about it. That does not clear it.`
+    ? `${sentence(name)} never changed its state while trips could happen, so switching says nothing about it. That does not clear it.`
+    : `Nobody knows when ${name} was on, so nothing can be said about it. That does not clear it.`
   const contrast: Reason = { text, method: 'contrast of exposures', figures: { changes: thing.changes.length } }
   const noted = notedReason(timeline, thing.of)
   const probability = (none * odds) / (1 + odds)
   return {
     of: thing.of,
-    label: thing.label,
+    label: name,
     probability: rounded(probability),
     share: 0,
     grade: 'unjudged',
@@ -178,8 +179,8 @@ function unjudgedSuspect(timeline: Timeline, thing: Thing, none: number): Suspec
     because: [contrast, noted ?? priorReason(probability)],
     next:
       thing.kind === 'circuit'
-        ? `Switch ${thing.label} off for some days, in both poles.`
-        : `Log when ${thing.label} runs, or unplug it for some days.`,
+        ? `Switch ${name} off for some days, in both poles.`
+        : `Log when ${name} runs, or unplug it for some days.`,
   }
 }
 

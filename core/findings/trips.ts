@@ -4,7 +4,7 @@ import type { Timeline, TimelineTrip } from '../timeline/timeline.ts'
 import { type TripFact, tripFacts } from './trip-facts.ts'
 import { sharesAt } from './trip-shares.ts'
 import { isClimb, type Trigger, triggerOf } from './trip-trigger.ts'
-import { duration, figure, rounded, sentence } from './words.ts'
+import { duration, figure, nameOf, rounded, sentence } from './words.ts'
 
 const MINUTE_MS = 60_000
 const HOUR_MS = 3_600_000
@@ -36,7 +36,7 @@ function textOf(timeline: Timeline, fact: TripFact, trigger: Trigger | null, hea
     originText(timeline.trips[fact.index]!),
     levelText(fact, headroom),
     courseText(timeline, fact),
-    triggerText(trigger),
+    triggerText(timeline, trigger),
   ]
   return sentence(`${parts.filter((part) => part !== '').join('; ')}.`)
 }
@@ -97,10 +97,10 @@ function unseenText(timeline: Timeline, fact: TripFact): string {
   return 'no reading near enough to the trip'
 }
 
-function triggerText(trigger: Trigger | null): string {
+function triggerText(timeline: Timeline, trigger: Trigger | null): string {
   if (trigger === null) return ''
   const { thing, change, agoMs } = trigger
-  return `${thing.label} had ${change.on ? 'come on' : 'gone off'} ${agoMs < 1_000 ? 'at that moment' : `${ago(agoMs)} earlier`}`
+  return `${nameOf(timeline, thing.of)} had ${change.on ? 'come on' : 'gone off'} ${agoMs < 1_000 ? 'at that moment' : `${ago(agoMs)} earlier`}`
 }
 
 function ago(ms: number): string {

@@ -15,10 +15,11 @@ const NAMES: Readonly<Record<string, string>> = {
   none: 'trips at random, as far as the data go',
 }
 
-/** What a suspect is called in a sentence: the label a person gave, else what it is. */
+/** What a suspect is called in a sentence: the label a person gave, else what it is; a circuit without one by its way. */
 export function nameOf(timeline: Timeline, of: string): string {
   const thing = timeline.things.find((t) => t.of === of)
-  if (thing !== undefined) return thing.label
+  if (thing !== undefined)
+    return thing.kind === 'circuit' && thing.label === thing.ref ? `circuit ${thing.ref}` : thing.label
   return NAMES[of] ?? of
 }
 

@@ -1,7 +1,7 @@
 import type { NextStep } from '../../contract/findings.ts'
 import { type GammaBelief, JEFFREYS } from '../../statistics/gamma-poisson.ts'
 import type { Thing, Timeline } from '../../timeline/timeline.ts'
-import { countOf, figure } from '../words.ts'
+import { countOf, figure, nameOf } from '../words.ts'
 import type { Proposal } from './best-isolations.ts'
 import { SETTLED } from './trial.ts'
 
@@ -13,7 +13,7 @@ export function isolationStep(timeline: Timeline, proposal: Proposal, belief: Ga
     isolate: isolation.of.join(' + '),
     days,
     settles: Number(trial.settles.toFixed(3)),
-    text: [how(things, byBreaker !== null), what(proposal, things, belief), neutral(proposal)]
+    text: [how(timeline, things, byBreaker !== null), what(proposal, things, belief), neutral(proposal)]
       .filter((text) => text !== '')
       .join(' '),
     bits: Number(trial.bits.toFixed(4)),
@@ -22,8 +22,8 @@ export function isolationStep(timeline: Timeline, proposal: Proposal, belief: Ga
   return step
 }
 
-function how(things: readonly Thing[], opensLineOnly: boolean): string {
-  const names = listed(things.map(called))
+function how(timeline: Timeline, things: readonly Thing[], opensLineOnly: boolean): string {
+  const names = listed(things.map((thing) => nameOf(timeline, thing.of)))
   if (things[0]?.kind === 'load') return `Unplug ${names} (or open both its poles)`
   return opensLineOnly ? `Isolate ${names} in both poles` : `Switch off ${names}`
 }
@@ -54,11 +54,6 @@ function neutral({ trial, byBreaker }: Proposal): string {
 
 function odds(p: number): string {
   return p > 0.995 ? 'over 0.99' : p < 0.005 ? 'below 0.01' : p.toFixed(2)
-}
-
-/** The label; a circuit without one is called by its way. */
-function called(thing: Thing): string {
-  return thing.kind === 'circuit' && thing.label === thing.ref ? `circuit ${thing.ref}` : thing.label
 }
 
 function listed(names: readonly string[]): string {

@@ -73,7 +73,7 @@ function planOf(timeline: Timeline, demand: readonly BudgetLine[], n: number): S
   }))
   const groups = devices.map(
     ({ of, ma, share }) =>
-      `${of.length === 0 ? 'nothing' : of.map((ref) => called(timeline, ref)).join(' + ')} (${current(ma)} mA, ${share.toFixed(2)} of the rating)`,
+      `${of.length === 0 ? 'nothing' : of.map((ref) => nameOf(timeline, ref)).join(' + ')} (${current(ma)} mA, ${share.toFixed(2)} of the rating)`,
   )
   const how = found.exact ? 'no other way is better' : 'near the best: too many circuits to try every way'
   return {
@@ -98,7 +98,7 @@ function textOf(
       : `${current(standing)} mA of standing leakage are ${base.nowShare!.toFixed(2)} of the rating; advised are ${base.advisedShare} at most.`
   const need =
     base.nowShare !== null && base.nowShare <= base.advisedShare ? 'The level alone does not ask for spreading.' : ''
-  const help = `Switch ${base.unjudged.length > 0 ? base.unjudged.map((of) => called(timeline, of)).join(', ') : 'each circuit'} off for some minutes with the clamp on the tails.`
+  const help = `Switch ${base.unjudged.length > 0 ? base.unjudged.map((of) => nameOf(timeline, of)).join(', ') : 'each circuit'} off for some minutes with the clamp on the tails.`
   if (standing !== null && rest > UNKNOWN_SHARE * standing) {
     return words(
       now,
@@ -123,9 +123,4 @@ function tooFew(timeline: Timeline, judged: number): string {
   if (timeline.rcd.circuits.length < 2) return 'There is only one circuit on this device: nothing to spread.'
   const have = judged === 0 ? 'No circuit has' : 'Only one circuit has'
   return `${have} a figure yet, so nothing can be spread. A survey would help most: the clamp on the tails, everything on, then each circuit off for a minute in turn.`
-}
-
-function called(timeline: Timeline, of: string): string {
-  const name = nameOf(timeline, of)
-  return of === `circuit:${name}` ? `circuit ${name}` : name
 }
