@@ -30,6 +30,8 @@ const BACKGROUND_SHARE = 0.2
 /** Above this many trips touched by two or more causes the exact sum gives way to Laplace's approximation. */
 const EXACT_TRIPS = [Number.POSITIVE_INFINITY, 400, 40, 22] as const
 
+type Method = 'exact' | 'laplace' | 'by-cost'
+
 interface Prior {
   readonly shape: number
   /** Hours: prior mean intensity is shape / rate. */
@@ -48,18 +50,47 @@ export function marginal(
   hours: number,
   trips: number,
   causes: readonly CauseWindow[],
-  method: 'exact' | 'laplace' | 'by-cost' = 'by-cost',
+  method: Method = 'by-cost',
 ): Marginal {
+  return marginals(hours, trips, [causes], method)[0]!
+}
+
+/** `marginal` of the same causes measured in several ways; ways that share their weights share most of the work. */
+export function marginals(
+  hours: number,
+  trips: number,
+  ways: readonly (readonly CauseWindow[])[],
+  method: Method = 'by-cost',
+): Marginal[] {
+  let before: readonly CauseWindow[] = []
+  let expansion: Expansion | null = null
+  return ways.map((causes) => {
+    const priors = priorsOf(hours, trips, causes)
+    if (causes.length === 0) return { log: gammaIntegrals(priors[0]!, trips)[trips]!, expected: [] }
+    if (expansion === null || !causes.every((c, j) => c.weights === before[j]?.weights)) {
+      const touched: number[] = []
+      for (let i = 0; i < trips; i++) if (causes.some((c) => c.weights[i]! > 0)) touched.push(i)
+      const isCostly = touched.length > EXACT_TRIPS[causes.length]!
+      if (method === 'laplace' || (method === 'by-cost' && isCostly)) return laplace(trips, causes, priors)
+      expansion = expansionOf(causes, touched)
+      before = causes
+    }
+    return exact(
+      trips,
+      expansion,
+      priors.map((p) => gammaIntegrals(p, trips)),
+    )
+  })
+}
+
+function priorsOf(hours: number, trips: number, causes: readonly CauseWindow[]): Prior[] {
   const seen = Math.max(1, trips)
   const priors: Prior[] =
     causes.length === 0
       ? [{ shape: 1, rate: hours / seen, hours }]
       : [{ shape: BACKGROUND_SHAPE, rate: (BACKGROUND_SHAPE * hours) / (BACKGROUND_SHARE * seen), hours }]
   for (const c of causes) priors.push({ shape: CAUSE_SHAPE, rate: (CAUSE_SHAPE * c.hours) / seen, hours: c.hours })
-  const touched: number[] = []
-  for (let i = 0; i < trips; i++) if (causes.some((c) => c.weights[i]! > 0)) touched.push(i)
-  const approximate = method === 'laplace' || (method === 'by-cost' && touched.length > EXACT_TRIPS[causes.length]!)
-  return approximate ? laplace(trips, causes, priors) : exact(trips, causes, priors, touched)
+  return priors
 }
 
 /** ln Γ(shape + k) for k = 0, 1, …, kept for the two shapes in use. */
@@ -84,60 +115,107 @@ function gammaIntegrals({ shape, rate, hours }: Prior, most: number): Float64Arr
   return integrals
 }
 
-function exact(
-  trips: number,
-  causes: readonly CauseWindow[],
-  priors: readonly Prior[],
-  touched: readonly number[],
-): Marginal {
+/** The product over trips of (1 + Σ wᵢⱼ xⱼ), expanded: what does not depend on how long anything was exposed. */
+interface Expansion {
+  /** ln of the coefficient of x₁^k₁ x₂^k₂ …, at k₁ + side k₂ + side² k₃; −∞ where it is none. */
+  readonly logs: Float64Array
+  readonly side: number
+  /** ln of what was divided out on the way. */
+  readonly scale: number
+}
+
+function expansionOf(causes: readonly CauseWindow[], touched: readonly number[]): Expansion {
   const m = causes.length
   const side = touched.length + 1
-  const integrals = priors.map((p) => gammaIntegrals(p, trips))
-  if (m === 0) return { log: integrals[0]![trips]!, expected: [] }
-
-  // coefficients[k₁ + side k₂ + side² k₃]: of the product over trips, by how many trips each cause made
   const size = side ** m
   const coefficients = new Float64Array(size)
   coefficients[0] = 1
+  const weights = causes.map((c) => c.weights)
   const stride = causes.map((_, j) => side ** j)
   let scale = 0
-  touched.forEach((trip, done) => {
+  for (let done = 0; done < touched.length; done++) {
+    const trip = touched[done]!
     let sum = 1
-    for (const c of causes) sum += c.weights[trip]!
+    for (const w of weights) sum += w[trip]!
     scale += Math.log(sum)
-    const top = Math.min(size - 1, (done + 1) * stride[m - 1]! + (m > 1 ? stride[m - 1]! - 1 : 0))
-    for (let at = top; at >= 0; at--) {
-      let value = coefficients[at]!
-      for (let j = 0; j < m; j++) {
-        const digit = Math.floor(at / stride[j]!) % side
-        if (digit > 0) value += causes[j]!.weights[trip]! * coefficients[at - stride[j]!]!
-      }
-      coefficients[at] = value / sum
+    if (m === 1) multiplyByOne(coefficients, done + 1, weights[0]![trip]!, sum)
+    else {
+      const top = Math.min(size - 1, (done + 1) * stride[m - 1]! + stride[m - 1]! - 1)
+      multiplyBy(coefficients, top, side, stride, weights, trip, sum)
     }
-  })
-
-  const logs = new Float64Array(size).fill(Number.NEGATIVE_INFINITY)
-  let largest = Number.NEGATIVE_INFINITY
+  }
+  const logs = new Float64Array(size)
   for (let at = 0; at < size; at++) {
     const c = coefficients[at]!
-    if (!(c > 0)) continue
-    let log = Math.log(c)
-    let used = 0
+    logs[at] = c > 0 ? Math.log(c) : Number.NEGATIVE_INFINITY
+  }
+  return { logs, side, scale }
+}
+
+/** Multiplies a polynomial in one unknown by (1 + w x) / sum, in place. */
+function multiplyByOne(coefficients: Float64Array, top: number, w: number, sum: number): void {
+  for (let at = top; at > 0; at--) coefficients[at] = (coefficients[at]! + w * coefficients[at - 1]!) / sum
+  coefficients[0] = coefficients[0]! / sum
+}
+
+/** The same in two or three unknowns. */
+function multiplyBy(
+  coefficients: Float64Array,
+  top: number,
+  side: number,
+  stride: readonly number[],
+  weights: readonly Float64Array[],
+  trip: number,
+  sum: number,
+): void {
+  const m = weights.length
+  for (let at = top; at >= 0; at--) {
+    let value = coefficients[at]!
+    let rest = at
     for (let j = 0; j < m; j++) {
-      const digit = Math.floor(at / stride[j]!) % side
-      used += digit
-      log += integrals[j + 1]![digit]!
+      if (rest % side > 0) value += weights[j]![trip]! * coefficients[at - stride[j]!]!
+      rest = Math.trunc(rest / side)
     }
-    log += integrals[0]![trips - used]!
+    coefficients[at] = value / sum
+  }
+}
+
+function exact(
+  trips: number,
+  { logs: expanded, side, scale }: Expansion,
+  integrals: readonly Float64Array[],
+): Marginal {
+  const m = integrals.length - 1
+  const size = expanded.length
+  const [background] = integrals
+  const logs = new Float64Array(size)
+  let largest = Number.NEGATIVE_INFINITY
+  for (let at = 0; at < size; at++) {
+    let log = expanded[at]!
+    if (log > Number.NEGATIVE_INFINITY) {
+      let used = 0
+      let rest = at
+      for (let j = 1; j <= m; j++) {
+        const digit = rest % side
+        used += digit
+        log += integrals[j]![digit]!
+        rest = Math.trunc(rest / side)
+      }
+      log += background![trips - used]!
+      if (log > largest) largest = log
+    }
     logs[at] = log
-    if (log > largest) largest = log
   }
   let total = 0
   const expected = new Array<number>(m).fill(0)
   for (let at = 0; at < size; at++) {
     const weight = Math.exp(logs[at]! - largest)
     total += weight
-    for (let j = 0; j < m; j++) expected[j]! += weight * (Math.floor(at / stride[j]!) % side)
+    let rest = at
+    for (let j = 0; j < m; j++) {
+      expected[j]! += weight * (rest % side)
+      rest = Math.trunc(rest / side)
+    }
   }
   return { log: largest + Math.log(total) + scale, expected: expected.map((e) => e / total) }
 }

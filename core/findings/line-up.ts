@@ -1,6 +1,6 @@
 import { CoreError } from '../errors.ts'
 import type { Spans } from '../timeline/spans.ts'
-import { type CauseWindow, type Marginal, marginal } from './cause-sets.ts'
+import { type CauseWindow, marginals } from './cause-sets.ts'
 import { type CauseSet, likelySets } from './likely-sets.ts'
 
 /** One way in which a suspect may act, with what the trips say about it. */
@@ -203,16 +203,14 @@ function overPaces(
   const same = windows.every(
     (w) => w.weightsBy.every((x) => x === w.weightsBy[0]) && w.hoursBy.every((h) => h === w.hoursBy[0]),
   )
-  let once: Marginal | null = null
-  const each = asked.map((k) => {
-    const m =
-      once ??
-      marginal(
-        hours,
-        trips,
-        windows.map((w): CauseWindow => ({ hours: w.hoursBy[k]!, weights: w.weightsBy[k]! })),
-      )
-    if (same) once = m
+  const ways = same && asked.length > 0 ? asked.slice(0, 1) : asked
+  const found = marginals(
+    hours,
+    trips,
+    ways.map((k) => windows.map((w): CauseWindow => ({ hours: w.hoursBy[k]!, weights: w.weightsBy[k]! }))),
+  )
+  const each = asked.map((k, place) => {
+    const m = found[same ? 0 : place]!
     return { pace: k, log: m.log + paces[k]!.logDensity + Math.log(paces[k]!.prior), expected: m.expected }
   })
   const log = logSum(each.map((m) => m.log))
