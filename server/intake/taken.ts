@@ -7,6 +7,8 @@ export interface Taken {
   /** How many readings the body carried. */
   readonly given: number
   readonly refusals: Refusals
+  /** Where the sender says so: within how many ms the next reading of a channel comes. */
+  readonly expected?: ReadonlyMap<string, number>
 }
 
 /** Counts refused readings and lists the first of them. */

@@ -4,7 +4,9 @@ import { z } from 'zod'
 import { InstantIn, ReadingsAnswer, Ref } from '../../core/contract/index.ts'
 import { takeColumns } from '../intake/columns.ts'
 import { type Place, takeIn } from '../intake/door.ts'
-import { SenmlPack, takeSenml } from '../intake/senml.ts'
+import { takeSenml } from '../intake/senml.ts'
+import { readSenmlCbor } from '../intake/senml-cbor.ts'
+import { SenmlPack } from '../intake/senml-record.ts'
 import type { Taken } from '../intake/taken.ts'
 import { MAX_READINGS_BYTES } from '../plugins/bodies.ts'
 import { ProblemError } from '../plugins/problem-error.ts'
@@ -19,6 +21,10 @@ const Columns = z
   })
   .meta({ description: 'Columns of equal length for each channel. A bad reading is refused alone.' })
 
+const Cbor = z
+  .string()
+  .meta({ format: 'binary', description: 'the same SenML records in CBOR, with the integer labels of RFC 8428' })
+
 const REPLACE = z.enum(['true', 'false']).default('false')
 
 /** How loggers post readings. */
@@ -30,7 +36,13 @@ export function readingsRoutes({ store, live, now }: Rooms): FastifyPluginAsyncZ
         bodyLimit: MAX_READINGS_BYTES,
         config: {
           access: ['owner', 'logger'],
-          describedBody: { 'application/json': Columns, 'application/senml+json': SenmlPack },
+          describedBody: {
+            'application/json': Columns,
+            'application/senml+json': SenmlPack,
+            'application/sensml+json': SenmlPack,
+            'application/senml+cbor': Cbor,
+            'application/sensml+cbor': Cbor,
+          },
         },
         schema: {
           summary: 'Post readings',
@@ -48,8 +60,8 @@ export function readingsRoutes({ store, live, now }: Rooms): FastifyPluginAsyncZ
       },
       async (request, reply) => {
         const { id, sheet } = await siteOf(store, request.params.site)
-        const senml = /^application\/senml\+json\b/i.test(request.headers['content-type'] ?? '')
-        const taken = senml ? takeSenml(request.body, sheet, now()) : takeColumns(request.body, sheet)
+        const senml = /^application\/sens?ml\+(json|cbor)\b/i.test(request.headers['content-type'] ?? '')
+        const taken = senml ? takeSenml(packOf(request.body), sheet, now()) : takeColumns(request.body, sheet)
         const answer = await takeIn(store, id, taken, senml ? RECORD_PLACE : COLUMN_PLACE, {
           replace: request.query.replace === 'true',
         })
@@ -62,6 +74,11 @@ export function readingsRoutes({ store, live, now }: Rooms): FastifyPluginAsyncZ
       for (const batch of batches) live.tell(site, { kind: 'readings', ...spanOf(batch) })
     }
   }
+}
+
+/** CBOR comes as bytes, JSON parsed. */
+function packOf(body: unknown): unknown {
+  return body instanceof Uint8Array ? readSenmlCbor(body) : body
 }
 
 /** The room of the file import, which is still empty. */

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { SiteSheet } from '../../core/contract/index.ts'
-import { resolveSenml, takeSenml } from '../../server/intake/senml.ts'
+import { takeSenml } from '../../server/intake/senml.ts'
+import { resolveSenml } from '../../server/intake/senml-record.ts'
 import { BAKERY } from './harness.ts'
 
 const sheet = SiteSheet.parse(BAKERY)
@@ -40,7 +41,7 @@ describe('base values of a pack', () => {
       { bn: 'tails-', bv: 10, bt: 1.7e9 },
       { n: 'a', v: 2.5 },
     ]
-    expect(resolveSenml(pack, NOW_MS)).toEqual([
+    expect(resolveSenml(pack, NOW_MS)).toMatchObject([
       { index: 1, name: 'tails-a', seconds: 1.7e9, unit: undefined, value: 12.5 },
     ])
   })
@@ -95,7 +96,7 @@ describe('a pack as readings', () => {
       { n: 'tails-a', v: 1 },
       { n: 'tails-a', t: 1e10, v: 1 },
     ])
-    expect(taken.refusals.listed.map(({ index }) => index)).toEqual([0, 1, 2, 3, 4, 6])
+    expect(taken.refusals.listed.map(({ index }) => index).sort()).toEqual([0, 1, 2, 3, 4, 6])
     expect(taken.refusals.listed[0]!.why).toContain('tails-a, leak-7')
     expect(taken.batches).toHaveLength(1)
   })
@@ -105,6 +106,7 @@ describe('a pack as readings', () => {
     ['a label that must be understood', [{ n: 'tails-a', v: 1, novel_: 1 }]],
     ['a later version', [{ bver: 11, n: 'tails-a', v: 1 }]],
     ['a value that is text', [{ n: 'tails-a', v: '1' }]],
+    ['mixed versions', [{ bver: 5, n: 'tails-a', v: 1 }, { bver: 6 }]],
   ])('is refused when it is %s', (_what, pack) => {
     expect(() => take(pack)).toThrow(expect.objectContaining({ name: 'Refused' }))
   })
