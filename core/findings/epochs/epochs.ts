@@ -6,7 +6,7 @@ import type { Timeline } from '../../timeline/timeline.ts'
 import { countOf, current, rounded, sentence } from '../words.ts'
 import { courseBefore } from './course-before.ts'
 import { type EpochAxis, epochAxis } from './epoch-axis.ts'
-import { quietTimes } from './quiet-times.ts'
+import { quietTimes, roundTrips } from './quiet-times.ts'
 
 /** Fewer trips than this have no common course. */
 const LEAST_TRIPS = 3
@@ -54,9 +54,12 @@ export function epochs(timeline: Timeline): Epochs {
   const random = seededRandom(`epochs ${n} ${Math.round((timeline.to - timeline.from) / 60_000)}`)
   const clock = localClock(timeline.sheet.timeZone)
   const days = clock.days(timeline.from, timeline.to)
+  const busy = roundTrips(timeline)
   const controls = seen
     .map(({ at }) =>
-      quietTimes(timeline, clock, days, at, CONTROLS, random).map((t) => courseBefore(timeline, leakage, t, axis)),
+      quietTimes(timeline, clock, days, busy, at, CONTROLS, random).map((t) =>
+        courseBefore(timeline, leakage, t, axis),
+      ),
     )
     .filter((courses) => courses.length >= 2)
   const band = controls.length < Math.max(LEAST_TRIPS, n / 2) ? null : bandOf(controls, n, axis, random)

@@ -1,6 +1,6 @@
 import type { Random } from '../../statistics/random.ts'
 import type { LocalClock, LocalDay } from '../../timeline/local-clock.ts'
-import { spanAt } from '../../timeline/spans.ts'
+import { contains, type Spans, spanAt, spansOf } from '../../timeline/spans.ts'
 import type { Timeline } from '../../timeline/timeline.ts'
 
 const MINUTE_MS = 60_000
@@ -14,12 +14,13 @@ const TRIES = 8
 
 /**
  * Draws instants at about the time of day of a trip on other days, under supply and logged, with no trip within an hour: what is usual at
- * that hour. `days` are the civil days of the span. As many as asked for or fewer.
+ * that hour. `days` are the civil days of the span, `busy` the hours round trips. As many as asked for or fewer.
  */
 export function quietTimes(
   timeline: Timeline,
   clock: LocalClock,
   days: readonly LocalDay[],
+  busy: Spans,
   trip: number,
   count: number,
   random: Random,
@@ -34,12 +35,13 @@ export function quietTimes(
     if (day.number === own || at <= timeline.from || at >= timeline.to) continue
     const closed = spanAt(timeline.energised, at - 1)
     if (closed === undefined || at - closed.from < CLOSED_MS) continue
-    if (spanAt(timeline.logged, at - 1) === undefined || isNearTrip(timeline, at)) continue
+    if (spanAt(timeline.logged, at - 1) === undefined || contains(busy, at)) continue
     list.push(at)
   }
   return list
 }
 
-function isNearTrip({ trips }: Timeline, at: number): boolean {
-  return trips.some((trip) => at > trip.from - HOUR_MS && at < trip.to + HOUR_MS)
+/** The hours round trips, in which no time counts as quiet. */
+export function roundTrips({ trips }: Timeline): Spans {
+  return spansOf(trips.map(({ from, to }) => [from - HOUR_MS, to + HOUR_MS] as const))
 }

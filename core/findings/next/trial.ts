@@ -32,8 +32,8 @@ export interface Trial {
 /**
  * What `hours` under supply with something isolated would tell. The number of trips in it is negative binomial: the rate is a gamma
  * belief, of which each case leaves a share. The question "has it a part in the trips?" is settled when its probability is at least
- * 0.9 or at most 0.1 afterwards; one that stands beyond these already is settled when the remaining doubt is a tenth of what it was. Weights of the cases
- * sum to 1. Cost: cases × trips to be expected.
+ * 0.9 or at most 0.1 afterwards; one that stands beyond these already is settled when the remaining doubt is a tenth of what it was. When trips
+ * come within the spell would tell a little more and is left out: the odds are on the safe side. Weights of the cases sum to 1. Cost: cases × trips to be expected.
  *
  * @see Lindley (1956), Ann. Math. Statist. 27, 986-1005 (information of an experiment)
  */

@@ -8,6 +8,8 @@ const APART = 1.5
 const APART_TRIPS = 0.5
 /** Below: more than habit. */
 const SURE = 0.05
+/** Less than this part of what was seen explains little. */
+const LITTLE = 0.5
 
 /**
  * What is left of a preference when like hours are compared, in words; null where it says the same as the plain count. Habits confound: a
@@ -37,9 +39,12 @@ function textOf(like: Stratified, plain: number, isSwitched: boolean): string {
     return like.p < SURE
       ? `It seldom held at the ${hours} at which the trips came: ${expected}, so that its ${number(like.inside)} weigh more (${pValue(like.p)}).`
       : `At the ${hours} at which the trips came, ${expected} (${pValue(like.p)}).`
-  if (like.p < SURE)
-    return `Habit is not all of it: at the ${hours} at which the trips came, ${expected}; there were ${number(like.inside)} (${pValue(like.p)}).`
-  return `Much of it may be habit: at the ${hours} at which the trips came, ${expected} anyway; there were ${number(like.inside)} (${pValue(like.p)}).`
+  const counts = `at the ${hours} at which the trips came, ${expected}`
+  if (like.p < SURE) {
+    const far = like.expected < LITTLE * like.inside
+    return `${far ? 'The time of day does not explain it' : 'Habit is not all of it'}: ${counts}; there were ${number(like.inside)} (${pValue(like.p)}).`
+  }
+  return `Much of it may be ${isSwitched ? 'habit' : 'the time of day'}: ${counts} anyway; there were ${number(like.inside)} (${pValue(like.p)}).`
 }
 
 function number(x: number): string {

@@ -38,14 +38,14 @@ describe('habit in words', () => {
     expect(reason.figures.p).toBeCloseTo((6 / 7) ** 8 + (8 / 7) * (6 / 7) ** 7, 5)
   })
 
-  it('says that habit is not all of it when it still stands out', () => {
+  it('says that the time of day does not explain it when it still stands out', () => {
     const p = preferenceOf(14, daily(18, 2, [0, 2, 4, 6]), [
       ...evening([0, 2, 4, 6]),
       tripAt(START + 18.9 * HOUR),
       tripAt(START + 66.4 * HOUR),
     ])
     expect(habitReason(p)!.text).toMatch(
-      /^Habit is not all of it: .* 1\.7 of 6 would be expected; there were 6 \(p = 0\.00054/,
+      /^The time of day does not explain it: .* 1\.7 of 6 would be expected; there were 6 \(p = 0\.00054/,
     )
   })
 
