@@ -37,6 +37,7 @@ export function findings(evidence: Evidence): Findings {
   const trips = tripFindings(timeline, lines, room)
   const weighed = suspects(timeline, { trips, profiles: runProfiles(timeline, lines), budget: lines, headroom: room })
   const { log } = weighed
+  const spreading = spreadFindings(timeline, lines, room)
   return {
     rcd: evidence.rcd,
     from: writeInstant(timeline.from),
@@ -58,10 +59,11 @@ export function findings(evidence: Evidence): Findings {
       trips: weighed.frame.trips.length,
       budget: lines,
       standingMa: room.standingMa?.p50 ?? null,
+      spread: spreading.plans[0]?.text ?? null,
     }),
     proof: proof(timeline, trips, leadingWindow(weighed)),
     epochs: epochs(timeline),
-    spread: spreadFindings(timeline, lines, room),
+    spread: spreading,
     notes: notesOf(timeline, weighed.frame.trips.length),
   }
 }

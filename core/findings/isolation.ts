@@ -32,6 +32,8 @@ export interface Lined {
   readonly standingMa: number | null
   /** The time of each suspect's likeliest window. */
   readonly windows: Parameters<typeof carriers>[1]
+  /** What spreading the circuits over two devices would do, in words; null where nothing can be planned. */
+  readonly spread?: string | null
 }
 
 /**
@@ -46,7 +48,7 @@ export function nextSteps(timeline: Timeline, hours: number, lined: Lined): Next
   const steps: NextStep[] = []
   const leading = suspects[0]
   if (leading !== undefined && leading.probability >= LEADS && !/^(load:|circuit:|none$)/.test(leading.of)) {
-    steps.push(ownTest(timeline, leading, belief))
+    steps.push(ownTest(timeline, leading, belief, lined.spread ?? null))
   }
   const site = siteOf(timeline, lined)
   const sets = withUnjudged(lined)
@@ -56,7 +58,7 @@ export function nextSteps(timeline: Timeline, hours: number, lined: Lined): Next
   if (proposals.length === 0 && best < SURE && timeline.things.length === 0) {
     steps.push(advise('No circuit is on the site sheet: enter circuits and loads, so that something can be isolated.'))
   }
-  if (best < SURE || trips < FEW_TRIPS) steps.push(stay(belief, trips))
+  if (best < SURE || trips < FEW_TRIPS) steps.push(stay(timeline, belief, trips))
   if (!timeline.tests.some((t) => t.kind === 'ramp') && timeline.rcd.rampTripMa === undefined) {
     steps.push(
       advise(
@@ -82,7 +84,7 @@ function nothingYet(hours: number): NextStep {
 }
 
 /** How long the logger must stay for one more trip and for three, with 90 % odds. */
-function stay(belief: GammaBelief, trips: number): NextStep {
+function stay(timeline: Timeline, belief: GammaBelief, trips: number): NextStep {
   const [one, three] = [stayFor(belief, 1), stayFor(belief, 3)]
   const days = Math.ceil(one / 24)
   const seen = `${sentence(countOf(trips, 'trip'))} so far`
@@ -96,7 +98,7 @@ function stay(belief: GammaBelief, trips: number): NextStep {
     isolate: null,
     days,
     settles: 0,
-    text: `Leave the logger on site: it catches at least one more trip in ${duration(one)} with 90 % odds${rest}.`,
+    text: `${timeline.leakage === null ? 'Put a leakage logger on the tails of this device' : 'Leave the logger on site'}: it catches at least one more trip in ${duration(one)} with 90 % odds${rest}.`,
   }
 }
 

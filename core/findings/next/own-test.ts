@@ -9,18 +9,18 @@ const TRIPS = 3
 
 /**
  * What settles the question of a suspect that no switch takes away: rain, a timer, the device, the supply, standing leakage, load
- * current. Says how many days three more trips take, where only they can tell.
+ * current. `spread` says what spreading the circuits would do. Says how many days three more trips take, where only they can tell.
  */
-export function ownTest(timeline: Timeline, suspect: Suspect, belief: GammaBelief): NextStep {
+export function ownTest(timeline: Timeline, suspect: Suspect, belief: GammaBelief, spread: string | null): NextStep {
   const days = Math.ceil(stayFor(belief, TRIPS) / 24)
   const wait =
     Number.isFinite(days) && days <= 60
       ? ` Three more trips, which would tell more, take about ${countOf(days, 'day')}.`
       : ''
-  return { isolate: null, days: 0, settles: 0, text: `${textOf(timeline, suspect)}${wait}` }
+  return { isolate: null, days: 0, settles: 0, text: `${textOf(timeline, suspect, spread)}${wait}` }
 }
 
-function textOf(timeline: Timeline, suspect: Suspect): string {
+function textOf(timeline: Timeline, suspect: Suspect, spread: string | null): string {
   const at = suspect.localTime === undefined ? 'at that time' : `at ${suspect.localTime}`
   switch (suspect.of) {
     case 'clock':
@@ -36,7 +36,7 @@ function textOf(timeline: Timeline, suspect: Suspect): string {
     case 'load-current':
       return `${suspect.next} It stays quiet only when both poles of the faulty circuit are open.`
     case 'standing':
-      return `${suspect.next} When the level then stays low and the trips stop, it was the sum and no single fault.`
+      return `${suspect.next}${spread === null ? '' : ` ${spread}`} When the level then stays low and the trips stop, it was the sum and no single fault.`
     case 'supply':
       return `Log the voltage on this device and write the trips of the other devices down to the minute: several at once settle it. ${suspect.next}`
     case 'device':

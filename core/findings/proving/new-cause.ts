@@ -6,7 +6,7 @@ import { stateBefore } from '../../timeline/exposure.ts'
 import { contains } from '../../timeline/spans.ts'
 import type { Timeline, TimelineTrip } from '../../timeline/timeline.ts'
 import type { SpokenWindow } from '../suspects.ts'
-import { countOf, current, figure, nameOf, pValue, rounded } from '../words.ts'
+import { countOf, current, figure, nameOf, pValue, rounded, sentence } from '../words.ts'
 import { dayLevels } from './level-change.ts'
 import type { Sides } from './rate-change.ts'
 
@@ -50,7 +50,7 @@ function whileOff(timeline: Timeline, { sides, of }: Given): Reason | null {
   if (offBefore > 0 && offBefore / sides.before.length >= 0.5) return null
   const all = sides.after.length
   return {
-    text: `${nameOf(timeline, thing.of)} was off at ${off === all ? (all === 1 ? 'the trip' : `all ${countOf(all, 'trip')}`) : `${off} of ${all} trips`} since the remedy: something else makes the device trip now.`,
+    text: `${sentence(nameOf(timeline, thing.of))} was off at ${off === all ? (all === 1 ? 'the trip' : `all ${countOf(all, 'trip')}`) : `${off} of ${all} trips`} since the remedy: something else makes the device trip now.`,
     method: 'state of the repaired thing at the trips since',
     figures: { tripsAfter: all, off, tripsBefore: sides.before.length, offBefore },
   }

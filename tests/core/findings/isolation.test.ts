@@ -27,6 +27,7 @@ const lined = (given: Partial<Lined>): Lined => ({
   budget: [],
   standingMa: null,
   windows: new Map(),
+  spread: null,
   ...given,
 })
 const sign = (weight: number) => [
@@ -95,6 +96,14 @@ describe('nextSteps', () => {
     const steps = nextSteps(week, 168, lined({ suspects: [suspect('none', 0.7)] }))
     // 168 (0.1^(-1/3.5) - 1) = 156.4 h
     expect(steps.some((s) => /at least one more trip in 6\.5\d? days with 90 % odds, three more in/.test(s.text))).toBe(
+      true,
+    )
+  })
+
+  it('asks for a logger where there was none, and for the spread where standing leakage leads', () => {
+    const steps = nextSteps(week, 168, lined({ suspects: [suspect('standing', 0.7)], spread: 'On two devices: …' }))
+    expect(steps[0]!.text).toMatch(/On two devices/)
+    expect(steps.some((s) => s.text.startsWith('Put a leakage logger on the tails of this device: it catches'))).toBe(
       true,
     )
   })

@@ -170,7 +170,7 @@ describe('a new cause', () => {
         remedies: [{ id: 'r', at: START + 120 * HOUR, of: 'load:mixer', done: 'unplugged' }],
       }),
     )
-    expect(found.newCause!.text).toMatch(/mixer was off at all two trips since the remedy/)
+    expect(found.newCause!.text).toMatch(/^Mixer was off at all two trips since the remedy/)
     expect(found.text).toMatch(/something else/)
   })
 
