@@ -8,6 +8,10 @@ import type { TimelineTrip } from './timeline.ts'
 /** A written trip, or a switching by hand, explains a fall so near, ms. */
 const EXPLAINS_MS = 10 * 60_000
 const DEFAULT_VOLTS = 230
+const DAY_MS = 86_400_000
+/** A level that falls to nothing oftener is that of a load that comes and goes, not of a device that opens. */
+const MOST_A_DAY = 0.5
+const FEW = 3
 
 /**
  * Falls to nothing in the logs of the site's other devices that nobody wrote down as a trip: one that comes with a trip of the device asked
@@ -22,7 +26,13 @@ export function otherFalls(evidence: Evidence, rcd: string, series: ReadonlyMap<
     const channels = sheet.channels.filter((c) => c.rcd === other.ref)
     const { level } = leakageOf(channels, series)
     const voltage = channels.find((c) => c.quantity === 'voltage' && series.has(c.ref))
-    const falls = [...leakageFalls(level), ...voltageFalls(voltage && series.get(voltage.ref), sheet.supply?.volts)]
+    const days = (evidence.to - evidence.from) / DAY_MS
+    const byLevel = leakageFalls(level)
+    const isHabit = byLevel.length > Math.max(FEW, MOST_A_DAY * days)
+    const falls = [
+      ...(isHabit ? [] : byLevel),
+      ...voltageFalls(voltage && series.get(voltage.ref), sheet.supply?.volts),
+    ]
     const things = new Set(
       other.circuits.flatMap((c) => [`circuit:${c.ref}`, ...c.loads.map((load) => `load:${load.ref}`)]),
     )

@@ -56,6 +56,16 @@ describe('trips shared over several devices', () => {
     expect(trips[0]!.course).not.toBe('shared')
   })
 
+  it('are not so by the habit of a load that carries the whole level of the other device', () => {
+    const cycling = logged((t) => (t % (2 * H) < 1.5 * H ? 9 : 0.02), 10 * S)
+    const { timeline, trips } = foundIn({
+      series: { 'tails-a': logged(levelWithout(9, [1.5 * H, 3 * H]), 10 * S), 'tails-b': cycling },
+      trips: [{ ...trip, at: T0 + 1.5 * H, restoredAt: T0 + 3 * H }],
+    })
+    expect(timeline.otherTrips).toEqual([])
+    expect(trips[0]!.course).not.toBe('shared')
+  })
+
   it('may come with a voltage event', () => {
     const volts = logged((t) => (t >= 2 * H - 4 * S && t < 2 * H ? 170 : t >= 2 * H && t < 2.5 * H ? 0 : 231), S)
     const { trips } = foundIn({
