@@ -1,5 +1,14 @@
 // Everything that crosses the border: one source for validation, OpenAPI, server and page.
 
+export {
+  AlertSettings,
+  AlertSettingsIn,
+  AlertSettingsOut,
+  DeliveryOut,
+  MatterKind,
+  MatterOut,
+  NO_ALERTS,
+} from './alerts.ts'
 export * as Finding from './findings.ts'
 export { Findings } from './findings.ts'
 export { KeyIn, KeyMade, KeyOut, KeyRole, SignIn, SiteKeyRole, Whoami } from './keys.ts'

@@ -1,5 +1,6 @@
 import type { KeyRole, RecordBodies, RecordKind, SiteSheet } from '../../core/contract/index.ts'
 import type { Series } from '../../core/timeline/series.ts'
+import type { AlertStore, MessageStore } from './alert-port.ts'
 
 /** Readings of one channel on their way in: any order, repeats allowed; finite values, times in range. */
 export interface ReadingBatch {
@@ -119,6 +120,11 @@ export interface KeepReport {
  * @throws {StoreError} from every call; see its codes.
  */
 export interface Store extends StoreReader {
+  /** Matters, settings and the outbox of alerts. */
+  readonly alerts: AlertStore
+  /** What brokers sent that could not be taken. */
+  readonly messages: MessageStore
+
   createSite(sheet: SiteSheet, act: Act): Promise<SiteRecord>
   /** Replaces the sheet; keeps the old one with who and when. Channels that left it keep their readings. */
   updateSite(id: string, sheet: SiteSheet, act: Act): Promise<SiteRecord>

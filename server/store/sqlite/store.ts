@@ -11,8 +11,10 @@ import {
   type StoredRecord,
   StoreError,
 } from '../port.ts'
+import { Alerts } from './alerts.ts'
 import { FindingsCache } from './findings-cache.ts'
 import { Keys } from './keys.ts'
+import { Messages } from './messages.ts'
 import { SqliteReader } from './reader.ts'
 import { Writing } from './writing.ts'
 
@@ -24,6 +26,8 @@ const SEALED_AT_ONCE = 5_000
 
 /** The whole store on one writing connection. */
 export class SqliteStore extends SqliteReader implements Store {
+  readonly alerts: Alerts
+  readonly messages: Messages
   readonly #writing: Writing
   readonly #keys: Keys
   readonly #cache: FindingsCache
@@ -37,6 +41,13 @@ export class SqliteStore extends SqliteReader implements Store {
     this.#writing = new Writing(this.blocks, this.recent, this.channels)
     this.#keys = new Keys(db)
     this.#cache = new FindingsCache(db)
+    const within = {
+      read: <T>(work: () => T): T => this.read(work),
+      write: <T>(work: () => T): T => this.write(work),
+      site: (id: string): number => this.siteTable.need(id),
+    }
+    this.alerts = new Alerts(db, within)
+    this.messages = new Messages(db, within)
     this.#letGo = letGo
     this.#recentRows = this.channels.recentTotal()
   }
