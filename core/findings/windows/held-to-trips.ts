@@ -1,5 +1,5 @@
 import { contains, intersect, spansOf, subtract, union } from '../../timeline/spans.ts'
-import type { Thing } from '../../timeline/timeline.ts'
+import type { Change, Thing } from '../../timeline/timeline.ts'
 import type { Blind } from './trip-share.ts'
 
 /** A thing that goes off so shortly before a trip went off with it: clocks differ by that much. */
@@ -26,7 +26,7 @@ export function heldToTrips(thing: Thing, trips: readonly { readonly from: numbe
   const blindMs = thing.readEveryMs !== null && thing.readEveryMs >= OFTEN_MS ? thing.readEveryMs : 0
   trips.forEach((trip, i) => {
     if (trip.to - trip.from > WITH_TRIP_MS) return
-    const last = thing.changes.findLast((c) => c.at <= trip.from)
+    const last = lastUpTo(thing.changes, trip.from)
     if (last !== undefined && !last.on && trip.from - last.at <= WITH_TRIP_MS) held.push([last.at, trip.from])
     else if (blindMs > 0 && contains(thing.state.off, trip.from - 1)) unread[i] = 1
   })
@@ -43,4 +43,16 @@ export function heldToTrips(thing: Thing, trips: readonly { readonly from: numbe
   if (blindMs === 0) return { thing: whole, blind: null }
   const starts = whole.changes.filter((c) => c.on).map(({ at }) => [at, at + blindMs] as const)
   return { thing: whole, blind: { unread, fresh: intersect(spansOf(starts), whole.state.on) } }
+}
+
+/** The last change at or before the instant. O(log n). */
+function lastUpTo(changes: readonly Change[], t: number): Change | undefined {
+  let low = 0
+  let high = changes.length
+  while (low < high) {
+    const middle = (low + high) >>> 1
+    if (changes[middle]!.at <= t) low = middle + 1
+    else high = middle
+  }
+  return changes[low - 1]
 }

@@ -71,6 +71,44 @@ export function windowOf(
   return layeredWindow(frame, key, words, prior, [{ inside, weight: 1 }], known)
 }
 
+/** What many windows of a frame ask of the same sets of time, worked out once. Sets are told apart by identity. */
+interface Measures {
+  meet(a: Spans, b: Spans): Spans
+  /** `shareOfTrip` of every trip. */
+  sharesOf(spans: Spans): readonly number[]
+  /** `hoursOf` under every habit. */
+  hoursOf(spans: Spans): readonly number[]
+}
+
+const measured = new WeakMap<Frame, Measures>()
+
+function measuresOf(frame: Frame): Measures {
+  const { habits, trips } = frame
+  const { energised } = frame.timeline
+  const met = new WeakMap<Spans, WeakMap<Spans, Spans>>()
+  const meet = (a: Spans, b: Spans): Spans =>
+    once(
+      once(met, a, () => new WeakMap<Spans, Spans>()),
+      b,
+      () => intersect(a, b),
+    )
+  const shares = new WeakMap<Spans, readonly number[]>()
+  const hours = new WeakMap<Spans, readonly number[]>()
+  return once(measured, frame, () => ({
+    meet,
+    sharesOf: (spans) => once(shares, spans, () => trips.map((trip) => shareOfTrip(spans, energised, trip))),
+    hoursOf: (spans) => once(hours, spans, () => habits.map((habit) => habit.hoursOf(spans))),
+  }))
+}
+
+function once<K extends object, V>(kept: WeakMap<K, V>, key: K, make: () => V): V {
+  const before = kept.get(key)
+  if (before !== undefined) return before
+  const made = make()
+  kept.set(key, made)
+  return made
+}
+
 /**
  * A window whose exposure is no plain yes or no: the sum of its layers, each a set of time with a weight, the first of
  * them the whole of it and what is spoken of. A cause acts in proportion to that sum. As `windowOf` otherwise.
@@ -86,26 +124,27 @@ export function layeredWindow(
 ): ExposureWindow | null {
   const { habits, hours, trips } = frame
   const { energised } = frame.timeline
-  const knownHere = intersect(known, energised)
+  const { meet, sharesOf, hoursOf } = measuresOf(frame)
+  const knownHere = meet(known, energised)
   const knownMs = totalMs(knownHere)
   const held = layers.map(({ inside, within }) => {
-    const here = intersect(inside, knownHere)
-    return within === undefined ? here : intersect(here, within)
+    const here = meet(inside, knownHere)
+    return within === undefined ? here : meet(here, within)
   })
   const heldMs = totalMs(held[0] ?? NO_SPANS)
   if (heldMs < 3 * MINUTE_MS || knownMs - heldMs < 3 * MINUTE_MS) return null
-  const shares = held.map((spans) => trips.map((trip) => shareOfTrip(spans, energised, trip)))
-  const unknown = trips.map((trip) => 1 - shareOfTrip(knownHere, energised, trip))
-  const fresh = blind === null ? NO_SPANS : intersect(blind.fresh, knownHere)
+  const shares = held.map(sharesOf)
+  const unknown = sharesOf(knownHere).map((share) => 1 - share)
+  const fresh = blind === null ? NO_SPANS : meet(blind.fresh, knownHere)
   const isKnown = unknown.every((u) => u === 0) && (blind === null || !blind.unread.includes(1))
   const hoursBy: number[] = []
   const weightsBy: Float64Array[] = []
   let insideHours = 0
   let inside = new Float64Array(0)
-  habits.forEach((habit, k) => {
-    const all = habit.hoursOf(knownHere)
-    const fractions = held.map((spans) => habit.hoursOf(spans) / all)
-    const started = habit.hoursOf(fresh) / all
+  habits.forEach((_, k) => {
+    const all = hoursOf(knownHere)[k]!
+    const fractions = held.map((spans) => hoursOf(spans)[k]! / all)
+    const started = hoursOf(fresh)[k]! / all
     const shareIn = (l: number, i: number): number => {
       const { fromStart, gated, within = NO_SPANS } = layers[l]!
       const isUnread = fromStart === true && blind?.unread[i] === 1
@@ -124,7 +163,8 @@ export function layeredWindow(
         : Float64Array.from(trips, (_, i) => layers.reduce((sum, { weight }, l) => sum + weight * shareIn(l, i), 0)),
     )
   })
-  const when = { inside: held[0] ?? NO_SPANS, known: knownHere }
+  // whoever counts windows by their sets counts this one by itself
+  const when = { inside: (held[0] ?? NO_SPANS).slice(), known: knownHere }
   return { key, words, prior, hoursBy, weightsBy, inside, insideHours, when }
 }
 
