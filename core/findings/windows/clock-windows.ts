@@ -1,19 +1,10 @@
 import { localClock } from '../../timeline/local-clock.ts'
-import { energisedClock } from '../energised-clock.ts'
 import type { ExposureWindow } from '../line-up.ts'
 import { type Frame, HOUR_MS, MINUTE_MS } from './trip-share.ts'
 
 const DAY_MINUTES = 1_440
 /** Widths of a daily window that are tried, minutes, and how many of them go round the clock. */
 const WIDTHS = [10, 20, 40, 90, 180] as const
-/** Into how many bins a period is cut, and how many neighbouring ones a window is. */
-const BINS = 33
-const BINS_WIDE = [2, 5] as const
-/** A period must be seen in so many of its turns. */
-const LEAST_TURNS = 3
-const VAGUE_MS = 20 * MINUTE_MS
-/** Fewer trips than this show no period. */
-const LEAST_TRIPS_FOR_PERIOD = 4
 
 /** Energised time by local minute of the day, h, and each trip's share in it. */
 interface DayProfile {
@@ -57,116 +48,6 @@ export function clockWindows(frame: Frame): ExposureWindow[] {
     }
   }
   return windows
-}
-
-/**
- * A fixed period other than the day: phase windows of periods from 1 h to 10 days (but at most a third of the span),
- * the frequencies close enough together that no phase is missed.
- */
-export function periodWindows(frame: Frame): ExposureWindow[] {
-  const { from, to } = frame.timeline
-  const spanHours = (to - from) / HOUR_MS
-  const longest = Math.min(240, spanHours / 3)
-  // a trip known no closer than this says nothing of a phase
-  const isVague = frame.trips.map((trip) => trip.to - trip.from > VAGUE_MS)
-  const known = isVague.filter((vague) => !vague).length
-  if (known < LEAST_TRIPS_FOR_PERIOD || longest < 2) return []
-  const middles = frame.trips.map((t) => (t.from + t.to) / 2)
-  // a timer behind the device stands still while it is open: both clocks are tried
-  const clocks = [middles.map((t) => (t - from) / HOUR_MS), middles.map(energisedClock(frame.timeline))]
-  const windows: ExposureWindow[] = []
-  const step = 0.04 / spanHours
-  const steps = Math.ceil((1 - 1 / longest) / step)
-  const prior = 1 / (clocks.length * BINS_WIDE.length * (steps + 1) * BINS)
-  const counts = new Uint32Array(2 * BINS)
-  for (const [c, at] of clocks.entries()) {
-    const exact = at.filter((_, i) => !isVague[i])
-    // phases are turned on from one frequency to the next, which is cheaper than to take them anew
-    const phases = Float64Array.from(exact, (t) => turn(t / longest))
-    const turns = Float64Array.from(exact, (t) => turn(t * step))
-    for (let s = 0; s <= steps; s++) {
-      counts.fill(0)
-      for (let i = 0; i < phases.length; i++) {
-        counts[(phases[i]! * BINS) | 0]! += 1
-        const next = phases[i]! + turns[i]!
-        phases[i] = next >= 1 ? next - 1 : next
-      }
-      const frequency = 1 / longest + s * step
-      if (isDaily(1 / frequency, spanHours)) continue
-      counts.copyWithin(BINS, 0, BINS)
-      for (const wide of BINS_WIDE) {
-        // a window with no more trips than its share is no evidence for the period; its prior is kept all the same
-        const least = Math.max(3, (3 * wide * known) / BINS)
-        let hits = 0
-        for (let k = 0; k < wide - 1; k++) hits += counts[k]!
-        for (let k = 0; k < BINS; k++) {
-          hits += counts[k + wide - 1]!
-          if (hits >= least && turnsHeld(at, isVague, frequency, k, wide) >= LEAST_TURNS)
-            windows.push(phaseWindow(frame, at, isVague, { frequency, from: k, wide, prior, underSupply: c === 1 }))
-          hits -= counts[k]!
-        }
-      }
-    }
-  }
-  return windows
-}
-
-/** In how many different turns of the period the trips of a window lie: a burst of trips is none. */
-function turnsHeld(
-  at: readonly number[],
-  isVague: readonly boolean[],
-  frequency: number,
-  from: number,
-  wide: number,
-): number {
-  const turns = new Set<number>()
-  at.forEach((t, i) => {
-    if (!isVague[i] && isInBins(t * frequency, from, wide)) turns.add(Math.floor(t * frequency - from / BINS))
-  })
-  return turns.size
-}
-
-function isInBins(turns: number, from: number, wide: number): boolean {
-  const bin = Math.min(BINS - 1, Math.floor(turn(turns) * BINS))
-  return (bin - from + BINS) % BINS < wide
-}
-
-interface Phase {
-  readonly frequency: number
-  /** First bin and number of bins. */
-  readonly from: number
-  readonly wide: number
-  readonly prior: number
-  readonly underSupply: boolean
-}
-
-function phaseWindow(
-  frame: Frame,
-  at: readonly number[],
-  isVague: readonly boolean[],
-  { frequency, from, wide, prior, underSupply }: Phase,
-): ExposureWindow {
-  const hours = 1 / frequency
-  const width = wide / BINS
-  const inside = Float64Array.from(at, (t, i) => {
-    if (isVague[i]) return width
-    return isInBins(t * frequency, from, wide) ? 1 : 0
-  })
-  const clock = underSupply ? ' under supply' : ''
-  return {
-    key: `${hours.toFixed(3)}h@${(from / BINS).toFixed(2)}+${width.toFixed(2)}${clock}`,
-    words: `in the same ${Math.round(width * 100)} % of a period of ${hours.toFixed(1)} h${clock}`,
-    prior,
-    hoursBy: frame.habits.map(() => frame.hours * width),
-    insideHours: frame.hours * width,
-    inside,
-    weightsBy: frame.habits.map(() => inside),
-  }
-}
-
-/** A number of turns less the whole ones, [0, 1). */
-function turn(turns: number): number {
-  return Math.min(turns - Math.floor(turns), 1 - Number.EPSILON)
 }
 
 /** Whole multiples of a day, and a day in up to so many equal parts, belong to the clock on the wall. */
