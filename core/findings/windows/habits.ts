@@ -16,6 +16,8 @@ const DAYS: readonly (readonly [from: number, to: number])[] = [
 ]
 /** Prior probability of each such day; the rest goes to a flat one. */
 const PRIOR = 0.1
+/** A habit that the trips make so many powers of e less likely than the best is left out. */
+const HOPELESS = 12
 /** So many trips known only as intervals of so many hours show when nobody is up. */
 const LEAST_INTERVALS = 3
 const LONG_MS = 2 * HOUR_MS
@@ -63,7 +65,10 @@ export function habitsOf(
     days.push({ spans, isLively: (m) => asleep[Math.floor(m)] === true })
   }
   const habits = days.map(({ spans, isLively }) => habitOf(timeline, trips, spans, isLively))
-  return [{ ...flat, prior: 1 - PRIOR * habits.length }, ...habits]
+  const every = [{ ...flat, prior: 1 - PRIOR * habits.length }, ...habits]
+  const best = Math.max(...every.map((habit) => habit.logDensity + Math.log(habit.prior)))
+  // the flat day stays first, whatever the trips say: timers are weighed on it
+  return every.filter((habit, k) => k === 0 || habit.logDensity + Math.log(habit.prior) > best - HOPELESS)
 }
 
 function habitOf(
