@@ -10,6 +10,8 @@ const BINS_WIDE = [2, 5] as const
 const VAGUE_MS = 20 * MINUTE_MS
 /** Fewer trips than this show no period. */
 const LEAST_TRIPS_FOR_PERIOD = 4
+/** A period must be seen in so many of its turns. */
+const LEAST_TURNS = 3
 /** A whole turn as an unsigned number of 32 bits: adding to phases then wraps by itself. */
 const TURN = 2 ** 32
 /** Phases are taken anew after so many frequencies, before rounding adds up to anything. */
@@ -48,18 +50,33 @@ export function periodWindows(frame: Frame): ExposureWindow[] {
     const exact = at.filter((_, i) => !isVague[i])
     const groups = alikeWindows(exact, steps, frequencyAt, (s) => isDaily(1 / frequencyAt(s), spanHours))
     return BINS_WIDE.flatMap((wide, w) =>
-      [...groups[w]!.values()].map((alike) => {
+      [...groups[w]!.values()].flatMap((alike) => {
         const middle = alike.steps.length >> 1
-        return phaseWindow(frame, at, isVague, {
-          frequency: frequencyAt(alike.steps[middle]!),
-          from: alike.bins[middle]!,
-          wide,
-          prior: prior * alike.count,
-          underSupply: c === 1,
-        })
+        const frequency = frequencyAt(alike.steps[middle]!)
+        const bin = alike.bins[middle]!
+        if (turnsHeld(exact, frequency, bin, wide) < LEAST_TURNS) return []
+        return [
+          phaseWindow(frame, at, isVague, {
+            frequency,
+            from: bin,
+            wide,
+            prior: prior * alike.count,
+            underSupply: c === 1,
+          }),
+        ]
       }),
     )
   })
+}
+
+/** In how many different turns of the period the trips of a window lie: a burst of trips is no period. */
+function turnsHeld(exact: readonly number[], frequency: number, from: number, wide: number): number {
+  const turns = new Set<number>()
+  for (const t of exact) {
+    const bin = binOf(turn(t * frequency) * TURN)
+    if ((bin - from + BINS) % BINS < wide) turns.add(Math.floor(t * frequency - from / BINS))
+  }
+  return turns.size
 }
 
 /**
