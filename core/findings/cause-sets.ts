@@ -69,7 +69,8 @@ export function marginals(
     if (causes.length === 0) return { log: gammaIntegrals(priors[0]!, trips)[trips]!, expected: [] }
     if (expansion === null || !causes.every((c, j) => c.weights === before[j]?.weights)) {
       const touched: number[] = []
-      for (let i = 0; i < trips; i++) if (causes.some((c) => c.weights[i]! > 0)) touched.push(i)
+      const weights = causes.map((c) => c.weights)
+      for (let i = 0; i < trips; i++) if (weights.some((w) => w[i]! > 0)) touched.push(i)
       const isCostly = touched.length > EXACT_TRIPS[causes.length]!
       if (method === 'laplace' || (method === 'by-cost' && isCostly)) return laplace(trips, causes, priors)
       expansion = expansionOf(causes, touched)
@@ -222,15 +223,19 @@ function exact(
 
 function laplace(trips: number, causes: readonly CauseWindow[], priors: readonly Prior[]): Marginal {
   const n = priors.length
-  const weight = (i: number, j: number): number => (j === 0 ? 1 : causes[j - 1]!.weights[i]!)
-  const rates = priors.map((p) => (p.shape + trips / n) / (p.rate + p.hours))
-  const made = new Array<number>(n).fill(0)
+  // rows of weights by trip, the background's 1 first
+  const weights = new Float64Array(trips * n).fill(1)
+  causes.forEach((c, j) => {
+    for (let i = 0; i < trips; i++) weights[i * n + j + 1] = c.weights[i]!
+  })
+  const rates = Float64Array.from(priors, (p) => (p.shape + trips / n) / (p.rate + p.hours))
+  const made = new Float64Array(n)
   for (let round = 0; round < 500; round++) {
     made.fill(0)
-    for (let i = 0; i < trips; i++) {
+    for (let at = 0; at < weights.length; at += n) {
       let sum = 0
-      for (let j = 0; j < n; j++) sum += weight(i, j) * rates[j]!
-      for (let j = 0; j < n; j++) made[j]! += (weight(i, j) * rates[j]!) / sum
+      for (let j = 0; j < n; j++) sum += weights[at + j]! * rates[j]!
+      for (let j = 0; j < n; j++) made[j]! += (weights[at + j]! * rates[j]!) / sum
     }
     let moved = 0
     for (let j = 0; j < n; j++) {
@@ -242,20 +247,20 @@ function laplace(trips: number, causes: readonly CauseWindow[], priors: readonly
   }
   const curvature = priors.map((p, j) => priors.map((_, k) => (j === k ? p.shape : 0)))
   let log = (n / 2) * Math.log(2 * Math.PI)
-  for (let i = 0; i < trips; i++) {
+  for (let at = 0; at < weights.length; at += n) {
     let sum = 0
-    for (let j = 0; j < n; j++) sum += weight(i, j) * rates[j]!
+    for (let j = 0; j < n; j++) sum += weights[at + j]! * rates[j]!
     log += Math.log(sum)
     for (let j = 0; j < n; j++) {
       for (let k = 0; k < n; k++)
-        curvature[j]![k]! += (weight(i, j) * rates[j]! * weight(i, k) * rates[k]!) / (sum * sum)
+        curvature[j]![k]! += (weights[at + j]! * rates[j]! * weights[at + k]! * rates[k]!) / (sum * sum)
     }
   }
   priors.forEach((p, j) => {
     log +=
       p.shape * Math.log(p.rate) - logGamma(p.shape) + p.shape * Math.log(rates[j]!) - (p.rate + p.hours) * rates[j]!
   })
-  return { log: log - 0.5 * logDeterminant(curvature), expected: made.slice(1) }
+  return { log: log - 0.5 * logDeterminant(curvature), expected: [...made.subarray(1)] }
 }
 
 /** Of a small positive-definite matrix, by elimination. */

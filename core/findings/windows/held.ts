@@ -1,5 +1,5 @@
 import { type Series, usualInterval } from '../../timeline/series.ts'
-import { type Spans, spansOf } from '../../timeline/spans.ts'
+import type { Spans } from '../../timeline/spans.ts'
 
 /**
  * Where a sampled quantity lies above (or below) a value; each reading holds until the next, at most three usual
@@ -13,12 +13,12 @@ export function heldAbove(
 ): { inside: Spans; known: Spans } {
   const usual = usualInterval(series)
   const hold = 3 * (Number.isNaN(usual) ? 0 : usual)
-  const inside: [number, number][] = []
-  const known: [number, number][] = []
-  const extend = (list: [number, number][], from: number, to: number): void => {
-    const last = list.at(-1)
-    if (last !== undefined && from <= last[1]) last[1] = to
-    else list.push([from, to])
+  const inside: number[] = []
+  const known: number[] = []
+  const extend = (list: number[], from: number, to: number): void => {
+    const last = list.length - 1
+    if (last > 0 && from <= list[last]!) list[last] = to
+    else list.push(from, to)
   }
   for (let i = 0; i < series.t.length; i++) {
     const from = series.t[i]! + shift
@@ -28,7 +28,7 @@ export function heldAbove(
     extend(known, from, to)
     if (above ? series.v[i]! > value : series.v[i]! < value) extend(inside, from, to)
   }
-  return { inside: spansOf(inside), known: spansOf(known) }
+  return { inside: Float64Array.from(inside), known: Float64Array.from(known) }
 }
 
 /** At most `n` values spread evenly. */

@@ -104,12 +104,16 @@ function alikeWindows(
       for (let i = 0; i < phases.length; i++) phases[i] = turn(exact[i]! * frequencyAt(s)) * TURN
     }
     counts.fill(0)
-    for (let i = 0; i < phases.length; i++) counts[binOf(phases[i]!)]! += 1
+    for (let i = 0; i < phases.length; i++) {
+      const phase = phases[i]!
+      counts[binOf(phase)]! += 1
+      phases[i] = phase + turns[i]!
+    }
     if (mayHold(counts, least) && !isLeftOut(s)) {
       binMarks.fill(0)
       binOthers.fill(0)
       for (let i = 0; i < phases.length; i++) {
-        const bin = binOf(phases[i]!)
+        const bin = binOf((phases[i]! - turns[i]!) >>> 0)
         binMarks[bin]! += marks[i]!
         binOthers[bin]! += others[i]!
       }
@@ -135,7 +139,6 @@ function alikeWindows(
         }
       })
     }
-    for (let i = 0; i < phases.length; i++) phases[i]! += turns[i]!
   }
   return groups
 }

@@ -136,7 +136,9 @@ export function layeredWindow(
   const shares = held.map(sharesOf)
   const unknown = sharesOf(knownHere).map((share) => 1 - share)
   const fresh = blind === null ? NO_SPANS : meet(blind.fresh, knownHere)
-  const isKnown = unknown.every((u) => u === 0) && (blind === null || !blind.unread.includes(1))
+  // what is known of a trip is the same under every habit
+  const isOpen = unknown.map((u, i) => u !== 0 || blind?.unread[i] === 1)
+  const isKnown = !isOpen.includes(true)
   const hoursBy: number[] = []
   const weightsBy: Float64Array[] = []
   let insideHours = 0
@@ -156,12 +158,19 @@ export function layeredWindow(
       insideHours = hours * fractions[0]!
       inside = Float64Array.from(trips, (_, i) => shareIn(0, i))
     }
-    const before = weightsBy[0]
-    weightsBy.push(
-      isKnown && before !== undefined
-        ? before
-        : Float64Array.from(trips, (_, i) => layers.reduce((sum, { weight }, l) => sum + weight * shareIn(l, i), 0)),
-    )
+    const [before] = weightsBy
+    if (before !== undefined && isKnown) {
+      weightsBy.push(before)
+      return
+    }
+    const weights = before === undefined ? new Float64Array(trips.length) : before.slice()
+    for (let i = 0; i < weights.length; i++) {
+      if (before !== undefined && !isOpen[i]) continue
+      let sum = 0
+      for (let l = 0; l < layers.length; l++) sum += layers[l]!.weight * shareIn(l, i)
+      weights[i] = sum
+    }
+    weightsBy.push(weights)
   })
   // whoever counts windows by their sets counts this one by itself
   const when = { inside: (held[0] ?? NO_SPANS).slice(), known: knownHere }
