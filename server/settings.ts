@@ -1,6 +1,11 @@
+import { createHash } from 'node:crypto'
+import { readFileSync } from 'node:fs'
+import { hostname } from 'node:os'
 import { join, resolve } from 'node:path'
 import { parseArgs } from 'node:util'
 import { z } from 'zod'
+import { type AlertServerSettings, readAlertSettings } from './alerts/settings.ts'
+import { type MqttSettings, readMqttSettings } from './mqtt/settings.ts'
 
 /** What the process was told to do and how; frozen. */
 export interface Settings {
@@ -11,6 +16,9 @@ export interface Settings {
   readonly port: number
   /** The owner key for the first start, when one was given. */
   readonly ownerKey: string | undefined
+  /** The broker to listen to; undefined: none. */
+  readonly mqtt: MqttSettings | undefined
+  readonly alertServer: AlertServerSettings
 }
 
 /** Why flags or environment cannot be used, in one sentence. */
@@ -60,7 +68,62 @@ export function readSettings(argv: readonly string[], env: NodeJS.ProcessEnv = p
     const field = read.error.issues[0]?.path[0] as keyof typeof EXPLAINED
     throw new SettingsError(EXPLAINED[field])
   }
-  return Object.freeze({ verb, ...read.data, data: resolve(read.data.data), ownerKey: read.data.ownerKey })
+  const data = resolve(read.data.data)
+  return Object.freeze({
+    verb,
+    ...read.data,
+    data,
+    ownerKey: read.data.ownerKey,
+    mqtt: mqttFrom(env, data),
+    alertServer: alertServerFrom(env),
+  })
+}
+
+function mqttFrom(env: NodeJS.ProcessEnv, data: string): MqttSettings | undefined {
+  const url = filled(env.LEAKTIDE_MQTT_URL)
+  if (url === undefined) return undefined
+  const texts = {
+    url,
+    sites: filled(env.LEAKTIDE_MQTT_SITES),
+    prefix: filled(env.LEAKTIDE_MQTT_PREFIX),
+    user: filled(env.LEAKTIDE_MQTT_USER),
+    password: filled(env.LEAKTIDE_MQTT_PASSWORD) ?? fileText('LEAKTIDE_MQTT_PASSWORD_FILE', env)?.trimEnd(),
+    ca: fileText('LEAKTIDE_MQTT_CA_FILE', env),
+    clientId: filled(env.LEAKTIDE_MQTT_CLIENT),
+  }
+  // The same at every start on this folder, so that the broker knows whose messages it kept.
+  const place = createHash('sha256').update(`${hostname()} ${data}`).digest('hex').slice(0, 12)
+  return orExplain(readMqttSettings(texts, `leaktide-${place}`))
+}
+
+function alertServerFrom(env: NodeJS.ProcessEnv): AlertServerSettings {
+  return orExplain(
+    readAlertSettings({
+      smtpUrl: filled(env.LEAKTIDE_SMTP_URL),
+      smtpUser: filled(env.LEAKTIDE_SMTP_USER),
+      smtpPassword: filled(env.LEAKTIDE_SMTP_PASSWORD) ?? fileText('LEAKTIDE_SMTP_PASSWORD_FILE', env)?.trimEnd(),
+      smtpCa: fileText('LEAKTIDE_SMTP_CA_FILE', env),
+      mailFrom: filled(env.LEAKTIDE_MAIL_FROM),
+      webhookHosts: filled(env.LEAKTIDE_WEBHOOK_HOSTS),
+    }),
+  )
+}
+
+function orExplain<T extends object>(read: T | { readonly why: string }): T {
+  if ('why' in read) throw new SettingsError(read.why)
+  return read
+}
+
+/** What the file holds that a variable names; undefined when it names none. */
+function fileText(variable: string, env: NodeJS.ProcessEnv): string | undefined {
+  const name = filled(env[variable])
+  if (name === undefined) return undefined
+  try {
+    return readFileSync(name, 'utf8')
+  } catch (error) {
+    if (!(error instanceof Error)) throw error
+    throw new SettingsError(`${variable} names a file that cannot be read.`)
+  }
 }
 
 /** The data file in a data folder. */

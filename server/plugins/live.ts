@@ -13,6 +13,8 @@ export type LiveEvent =
     }
   | { readonly kind: 'records'; readonly record: RecordKind }
   | { readonly kind: 'sheet' }
+  /** Something was noticed, or is over. */
+  | { readonly kind: 'matters' }
 
 interface Listener {
   readonly site: string
@@ -30,6 +32,7 @@ const MOST_LISTENERS = 2_000
 export class LiveHub {
   readonly #listeners = new Set<Listener>()
   readonly #heartbeat: NodeJS.Timeout
+  readonly #watchers: ((site: string, event: LiveEvent) => void)[] = []
   #closed = false
 
   constructor() {
@@ -55,7 +58,13 @@ export class LiveHub {
     return false
   }
 
+  /** Calls for every event of every site, from inside the server. */
+  watch(watcher: (site: string, event: LiveEvent) => void): void {
+    this.#watchers.push(watcher)
+  }
+
   tell(site: string, event: LiveEvent): void {
+    for (const watcher of this.#watchers) watcher(site, event)
     const listeners = [...this.#listeners].filter((listener) => listener.site === site)
     if (listeners.length > 0) this.#write(listeners, written(event))
   }

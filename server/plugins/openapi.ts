@@ -42,6 +42,7 @@ const TAGS = [
   ['readings', 'What loggers post, and what is drawn of it'],
   ['records', 'Trips, switchings, timetables, tests and remedies'],
   ['findings', 'What causes the trips, with odds'],
+  ['alerts', 'What is noticed, and who is told'],
   ['keys', 'Who may do what'],
   ['session', 'Signing the page in'],
   ['service', 'The server itself'],
@@ -102,7 +103,7 @@ function complete(schema: Described, config: Config, methods: readonly string[])
   const open = config.access === 'open' || config.access === undefined
   const roles = open ? [] : (config.access as readonly string[])
   const who = open ? 'Needs no key.' : `For keys of role ${roles.join(', ')}.`
-  const withBody = methods.some((method) => method === 'POST' || method === 'PATCH')
+  const withBody = methods.some((method) => ['POST', 'PATCH', 'PUT'].includes(method))
   const statuses = new Set<number>([
     ...(open ? [] : [401, 403]),
     ...(withBody ? [400, 413, 415, 422] : []),

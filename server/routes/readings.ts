@@ -7,10 +7,9 @@ import { type Place, takeIn } from '../intake/door.ts'
 import { takeSenml } from '../intake/senml.ts'
 import { readSenmlCbor } from '../intake/senml-cbor.ts'
 import { SenmlPack } from '../intake/senml-record.ts'
-import type { Taken } from '../intake/taken.ts'
 import { MAX_READINGS_BYTES } from '../plugins/bodies.ts'
 import { ProblemError } from '../plugins/problem-error.ts'
-import type { ReadingBatch } from '../store/port.ts'
+import { tellReadings } from '../plugins/tell-readings.ts'
 import { SiteParams } from './params.ts'
 import { type Rooms, siteOf } from './shared.ts'
 
@@ -28,7 +27,7 @@ const Cbor = z
 const REPLACE = z.enum(['true', 'false']).default('false')
 
 /** How loggers post readings. */
-export function readingsRoutes({ store, live, now }: Rooms): FastifyPluginAsyncZod {
+export function readingsRoutes({ store, live, alerts, now }: Rooms): FastifyPluginAsyncZod {
   return async (app) => {
     app.post(
       '/sites/:site/readings',
@@ -65,14 +64,11 @@ export function readingsRoutes({ store, live, now }: Rooms): FastifyPluginAsyncZ
         const answer = await takeIn(store, id, taken, senml ? RECORD_PLACE : COLUMN_PLACE, {
           replace: request.query.replace === 'true',
         })
-        if (answer.stored > 0 && live.heard(id)) tell(id, taken)
+        if (answer.stored > 0) tellReadings(live, id, taken)
+        alerts.arrived(id, taken)
         return reply.type('application/json; charset=utf-8').send(answer)
       },
     )
-
-    function tell(site: string, { batches }: Taken): void {
-      for (const batch of batches) live.tell(site, { kind: 'readings', ...spanOf(batch) })
-    }
   }
 }
 
@@ -93,13 +89,3 @@ async function refuseCsv(request: FastifyRequest): Promise<void> {
 
 const COLUMN_PLACE: Place = (block, index, column) => `/blocks/${block}/${column}/${index}`
 const RECORD_PLACE: Place = (_block, index, column) => `/${index}/${column}`
-
-function spanOf({ channel, t }: ReadingBatch): { channel: string; from: number; to: number; stored: number } {
-  let from = Number.POSITIVE_INFINITY
-  let to = Number.NEGATIVE_INFINITY
-  for (const at of t) {
-    if (at < from) from = at
-    if (at > to) to = at
-  }
-  return { channel, from, to, stored: t.length }
-}

@@ -1,6 +1,9 @@
 import type { Readable } from 'node:stream'
 import type { FastifyRequest } from 'fastify'
+import type { AlertsDoor } from '../alerts/alerts.ts'
+import type { AlertServerSettings } from '../alerts/settings.ts'
 import type { Analysis } from '../analysis/analysis.ts'
+import type { MqttStatus } from '../mqtt/mqtt-intake.ts'
 import type { Caller } from '../plugins/callers.ts'
 import type { LiveHub } from '../plugins/live.ts'
 import { ProblemError } from '../plugins/problem-error.ts'
@@ -11,6 +14,10 @@ export interface Rooms {
   readonly store: Store
   readonly analysis: Analysis
   readonly live: LiveHub
+  readonly alerts: AlertsDoor
+  readonly alertServer: AlertServerSettings
+  /** Undefined where the server listens to no broker. */
+  readonly mqtt: () => MqttStatus | undefined
   readonly now: () => number
 }
 

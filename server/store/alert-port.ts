@@ -87,6 +87,7 @@ export interface AlertStore {
 
   /** Matters that are open, or were opened at `since` or later; oldest first. */
   mattersSince(site: string, since: number): Promise<readonly MatterRecord[]>
+  mattersById(site: string, ids: readonly string[]): Promise<readonly MatterRecord[]>
   /** Newest first. */
   matters(site: string, query: PageQuery & { readonly open?: boolean | undefined }): Promise<Page<MatterRecord>>
   /** How many matters are open, by site; sites without any are left out. */
@@ -94,8 +95,8 @@ export interface AlertStore {
   /** Opens, closes and fills the outbox in one transaction. A matter whose key is open already is not opened again, nor told. */
   change(site: string, change: MatterChange): Promise<void>
 
-  /** Deliveries that wait, oldest first. */
-  waiting(limit: number): Promise<readonly DeliveryRecord[]>
+  /** Deliveries that wait and are due at `now`, longest due first; those due after `beyond` too: a clock went back. */
+  due(now: number, beyond: number, limit: number): Promise<readonly DeliveryRecord[]>
   attempted(num: number, attempt: Attempt): Promise<void>
   /** Newest first. */
   deliveries(site: string, query: PageQuery): Promise<Page<DeliveryRecord>>

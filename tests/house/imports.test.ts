@@ -39,6 +39,27 @@ const ROOMS: readonly Room[] = [
     ],
   },
   {
+    folder: 'server/mqtt',
+    may: ['server/mqtt', 'server/intake', 'server/store/port.ts', 'core/', 'node:*', 'mqtt', 'zod'],
+    never: ['core/simulate'],
+  },
+  {
+    folder: 'server/alerts',
+    may: [
+      'server/alerts',
+      'server/intake/taken.ts',
+      'server/store/port.ts',
+      'server/store/alert-port.ts',
+      'server/analysis/limits.ts',
+      'core/',
+      'node:*',
+      'nodemailer',
+      'zod',
+      ...pure,
+    ],
+    never: ['core/simulate', 'core/findings'],
+  },
+  {
     folder: 'server/intake',
     may: ['server/intake', 'server/store/port.ts', 'core/', 'node:*', ...withoutDatabaseAndHttp],
     never: ['core/simulate'],

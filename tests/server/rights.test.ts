@@ -8,7 +8,8 @@ const ROLES = ['logger', 'viewer', 'occupant'] as const
 /** What each role may do beside asking who it is and signing out; everything else is the owner's alone. */
 const MAY: Readonly<Record<SiteKeyRole, (operation: Operation) => boolean>> = {
   logger: ({ method, path }) => method === 'POST' && /^\/sites\/\{site\}\/(readings|trips|switchings)$/.test(path),
-  viewer: ({ method, path }) => method === 'GET' && path.startsWith('/sites') && !path.endsWith('/keys'),
+  viewer: ({ method, path }) =>
+    method === 'GET' && path.startsWith('/sites') && !/\/(keys|alerts|alerts\/deliveries)$/.test(path),
   occupant: ({ method, path }) => method === 'POST' && path === '/sites/{site}/trips',
 }
 const OPEN = ['GET /health', 'POST /session']
@@ -47,7 +48,7 @@ describe('rights', () => {
       .replace('{rcd}', 'A')
       .replace('{channel}', 'tails-a')
     // A body that nobody takes: only whether it is looked at at all is asked here.
-    const body = operation.method === 'POST' || operation.method === 'PATCH' ? {} : undefined
+    const body = ['POST', 'PATCH', 'PUT'].includes(operation.method) ? {} : undefined
     return (await h.call(operation.method, path, body, { key })).statusCode
   }
 

@@ -34,6 +34,9 @@ export function alertStatements(db: Database.Database) {
     mattersSince: db.prepare<[number, number], MatterRow>(
       `SELECT ${MATTER} FROM matter WHERE site = ? AND (closed_at IS NULL OR opened_at >= ?) ORDER BY num`,
     ),
+    mattersById: db.prepare<[number, string], MatterRow>(
+      `SELECT ${MATTER} FROM matter WHERE site = ? AND id IN (SELECT value FROM json_each(?)) ORDER BY num`,
+    ),
     matters: db.prepare<[number, number, number | null, number | null, number], MatterRow>(
       `SELECT ${MATTER} FROM matter WHERE site = ? AND num < ? AND (? IS NULL OR (closed_at IS NULL) = ?)
        ORDER BY num DESC LIMIT ?`,
@@ -60,8 +63,8 @@ export function alertStatements(db: Database.Database) {
     addDelivery: db.prepare<[number, string, string, number]>(
       `INSERT INTO alert_delivery (message, way, target, state, next_at) VALUES (?, ?, ?, 'waiting', ?)`,
     ),
-    waiting: db.prepare<[number], DeliveryRow>(
-      `${DELIVERY} WHERE state = 'waiting' ORDER BY alert_delivery.num LIMIT ?`,
+    due: db.prepare<[number, number, number], DeliveryRow>(
+      `${DELIVERY} WHERE state = 'waiting' AND (next_at <= ? OR next_at > ?) ORDER BY next_at, alert_delivery.num LIMIT ?`,
     ),
     attempted: db.prepare<[string, number, number, number | null, string | null, number]>(
       `UPDATE alert_delivery SET state = ?, attempts = attempts + 1, next_at = ?, tried_at = ?, done_at = ?, error = ?

@@ -51,6 +51,12 @@ export class Alerts implements AlertStore {
     return this.#within.read(() => this.#sql.mattersSince.all(this.#within.site(site), since).map(this.#matter))
   }
 
+  async mattersById(site: string, ids: readonly string[]): Promise<readonly MatterRecord[]> {
+    return this.#within.read(() =>
+      this.#sql.mattersById.all(this.#within.site(site), JSON.stringify(ids)).map(this.#matter),
+    )
+  }
+
   async matters(site: string, query: PageQuery & { readonly open?: boolean | undefined }): Promise<Page<MatterRecord>> {
     return this.#within.read(() => {
       const { limit, before } = place(query)
@@ -87,8 +93,8 @@ export class Alerts implements AlertStore {
     })
   }
 
-  async waiting(limit: number): Promise<readonly DeliveryRecord[]> {
-    return this.#within.read(() => this.#sql.waiting.all(limit).map(this.#delivery))
+  async due(now: number, beyond: number, limit: number): Promise<readonly DeliveryRecord[]> {
+    return this.#within.read(() => this.#sql.due.all(now, beyond, limit).map(this.#delivery))
   }
 
   async attempted(num: number, attempt: Attempt): Promise<void> {

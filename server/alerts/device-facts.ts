@@ -1,0 +1,91 @@
+import type { Finding } from '../../core/contract/index.ts'
+import { Findings } from '../../core/contract/index.ts'
+import { TooBusy, TooMuch } from '../analysis/limits.ts'
+import { type SiteRecord, StoreError } from '../store/port.ts'
+
+/** What alerts need of the findings of a device. */
+export interface DeviceFacts {
+  readonly rcd: string
+  readonly tripMa: number
+  readonly basis: string
+  readonly proof: Finding.Proof
+}
+
+/** Answers what the findings of a device are. */
+export type AskFindings = (site: SiteRecord, rcd: string) => Promise<{ readonly body: string }>
+
+interface Kept {
+  readonly revision: number
+  readonly askedElapsed: number
+  readonly facts: DeviceFacts | undefined
+}
+
+/** Findings are asked for no more often than this for one device: with every post they would be new. */
+const FRESH_MS = 3_600_000
+
+const Needed = Findings.pick({ headroom: true, proof: true })
+
+/** The facts of devices, asked for in the background, one device after the other, so that nothing waits for them. */
+export class FactsOfDevices {
+  readonly #ask: AskFindings
+  readonly #elapsed: () => number
+  readonly #warn: (error: unknown) => void
+  readonly #kept = new Map<string, Kept>()
+  readonly #wanted = new Map<string, { readonly site: SiteRecord; readonly rcd: string }>()
+  #running: Promise<void> | undefined
+
+  constructor(ask: AskFindings, elapsed: () => number, warn: (error: unknown) => void) {
+    this.#ask = ask
+    this.#elapsed = elapsed
+    this.#warn = warn
+  }
+
+  /** What is known of a device now; asks anew where that is old and something changed since. */
+  of(site: SiteRecord, rcd: string): DeviceFacts | undefined {
+    const key = `${site.id}/${rcd}`
+    const kept = this.#kept.get(key)
+    const old = kept === undefined || this.#elapsed() - kept.askedElapsed >= FRESH_MS
+    if (old && kept?.revision !== site.revision) {
+      this.#wanted.set(key, { site, rcd })
+      this.#running ??= this.#run().finally(() => {
+        this.#running = undefined
+      })
+    }
+    return kept?.facts
+  }
+
+  /** Asks again at the next look, as after a ramp test or a remedy was written down. */
+  expire(site: string): void {
+    for (const [key, kept] of this.#kept) {
+      if (key.startsWith(`${site}/`)) this.#kept.set(key, { ...kept, askedElapsed: Number.NEGATIVE_INFINITY })
+    }
+  }
+
+  /** Resolves when nothing is being asked. */
+  async settled(): Promise<void> {
+    await this.#running
+  }
+
+  async #run(): Promise<void> {
+    for (;;) {
+      const [next] = this.#wanted
+      if (next === undefined) return
+      const [key, { site, rcd }] = next
+      this.#wanted.delete(key)
+      const facts = (await this.#facts(site, rcd)) ?? this.#kept.get(key)?.facts
+      this.#kept.set(key, { revision: site.revision, askedElapsed: this.#elapsed(), facts })
+    }
+  }
+
+  async #facts(site: SiteRecord, rcd: string): Promise<DeviceFacts | undefined> {
+    try {
+      const { body } = await this.#ask(site, rcd)
+      const { headroom, proof } = Needed.parse(JSON.parse(body))
+      return { rcd, tripMa: headroom.tripMa.value, basis: headroom.tripMa.basis, proof }
+    } catch (error) {
+      const passing = error instanceof TooBusy || error instanceof TooMuch || error instanceof StoreError
+      if (!passing) this.#warn(error)
+      return undefined
+    }
+  }
+}

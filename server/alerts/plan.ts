@@ -1,0 +1,54 @@
+import type { AlertSettings, MatterKind } from '../../core/contract/index.ts'
+import type { AlertWay, MatterChange, MatterRecord, NewMatter, NewMessage } from '../store/alert-port.ts'
+import type { Noticed } from './notice.ts'
+
+/** Where messages of a site go. */
+export function waysOf({
+  email,
+  webhook,
+}: AlertSettings): readonly { readonly way: AlertWay; readonly target: string }[] {
+  return [
+    ...(email?.to ?? []).map((target) => ({ way: 'email' as const, target })),
+    ...(webhook === null ? [] : [{ way: 'webhook' as const, target: webhook.url }]),
+  ]
+}
+
+/**
+ * What changes by what was noticed: matters that open and close, and one message for all of a kind that open together,
+ * where the site wants to be told. A matter that is open already is no news. Undefined when nothing changes.
+ */
+export function planChange(
+  known: readonly MatterRecord[],
+  noticed: readonly Noticed[],
+  settings: AlertSettings,
+  now: number,
+  newId: () => string,
+): MatterChange | undefined {
+  const openByKey = new Map(known.filter(({ closedAt }) => closedAt === null).map((matter) => [matter.key, matter.id]))
+  const over = noticed.flatMap((one) => one.over)
+  const close = over.flatMap((key) => {
+    const id = openByKey.get(key)
+    return id === undefined ? [] : [{ id, at: now }]
+  })
+  const open: NewMatter[] = noticed
+    .flatMap(({ notices }) => notices)
+    .filter(({ key }) => !openByKey.has(key))
+    .map((notice) => ({ ...notice, id: newId(), openedAt: now }))
+  if (open.length === 0 && close.length === 0) return undefined
+  const to = waysOf(settings)
+  const kinds = new Set(open.map(({ kind }) => kind).filter((kind) => wants(settings, kind)))
+  const messages = [...kinds].map(
+    (kind): NewMessage => ({
+      id: newId(),
+      kind,
+      createdAt: now,
+      matters: open.filter((matter) => matter.kind === kind).map(({ id }) => id),
+      to,
+    }),
+  )
+  return { open, close, messages: to.length === 0 ? [] : messages }
+}
+
+function wants({ about }: AlertSettings, kind: MatterKind): boolean {
+  return kind === 'test' || about[kind]
+}
