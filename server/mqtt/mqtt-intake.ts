@@ -7,6 +7,7 @@ import { type Inlet, takeMessage } from './take-message.ts'
 
 /** What is known of the broker. */
 export interface MqttStatus {
+  /** Connected and subscribed. */
   readonly connected: () => boolean
   readonly topicsOf: (site: string) => readonly string[]
 }
@@ -36,6 +37,7 @@ export function openMqtt(options: MqttOptions): MqttIntake {
   const stopping = new AbortController()
   let inHand: Promise<void> = Promise.resolve()
   let failures = 0
+  let subscribed = false
   let lastWarning = ''
   const warnOnce = (text: string): void => {
     if (text !== lastWarning) warn(text)
@@ -56,11 +58,13 @@ export function openMqtt(options: MqttOptions): MqttIntake {
     lastWarning = ''
     client.subscribe([...rights.filters], { qos: 1 }, (error, granted) => {
       const denied = (granted ?? []).filter(({ qos }) => qos === 128).map(({ topic }) => topic)
+      subscribed = !error
       if (error && !client.disconnecting) warnOnce(`MQTT: subscribing failed: ${error.message}`)
       else if (denied.length > 0) warnOnce(`MQTT: the broker does not let us listen to ${denied.join(', ')}`)
     })
   })
   client.on('close', () => {
+    subscribed = false
     client.options.reconnectPeriod = backOff(failures++, firstWaitMs, mostWaitMs, Math.random)
   })
   client.on('error', (error) => warnOnce(`MQTT: ${error.message}`))
@@ -93,12 +97,13 @@ export function openMqtt(options: MqttOptions): MqttIntake {
   }
 
   return {
-    connected: () => client.connected,
+    connected: () => client.connected && subscribed,
     topicsOf: (site) => rights.topicsOf(site),
     stop: async () => {
       stopping.abort()
       await inHand
-      await client.endAsync(!client.connected)
+      // By force: messages that came meanwhile stay unacknowledged, and would hold up a farewell for ever.
+      await client.endAsync(true)
     },
   }
 }
