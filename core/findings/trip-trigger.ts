@@ -44,7 +44,7 @@ export function triggerOf(timeline: Timeline, fact: TripFact, lines: readonly Bu
   let best: { trigger: Trigger; ma: number } | null = null
   for (const thing of timeline.things) {
     const change = changeBehind(thing, fact, trip.from, since, until) ?? cameBack(timeline, thing, trip.from, since)
-    if (change === null) continue
+    if (change === null || (!change.on && endsWithOthers(timeline, thing, change.at))) continue
     const agoMs = Math.max(0, trip.from - change.at)
     // What falls when it comes on has not fired a rise.
     const ma = change.on ? (lines.find((l) => l.of === thing.of)?.ma ?? 0) : 0
@@ -79,6 +79,16 @@ function changeBehind(thing: Thing, fact: TripFact, tripAt: number, since: numbe
   if (fact.course === 'sudden') return tripAt - last.at <= OFF_MS ? last : null
   const start = thing.changes[k - 1]
   return fact.roseAt !== null && last.at >= fact.roseAt && start?.on && start.at >= since ? start : null
+}
+
+/** Whether other things went off with it, and not by its breaker: then the device had opened, and the trip was noted late. */
+function endsWithOthers(timeline: Timeline, thing: Thing, at: number): boolean {
+  const ended = timeline.things.filter((other) => {
+    const last = other.changes[lastChange(other, at + AT_ONCE_MS)]
+    return last !== undefined && !last.on && last.at >= at - AT_ONCE_MS
+  })
+  const byBreaker = ended.some((other) => other.kind === 'circuit' && other.circuit === thing.circuit)
+  return ended.some((other) => other !== thing && !(byBreaker && other.circuit === thing.circuit))
 }
 
 /** A load that came back with the supply when the device was closed, and runs since: a start too, though nobody switched it. */

@@ -6,7 +6,7 @@ import { tripFindings } from '../../../core/findings/trips.ts'
 import { seededRandom } from '../../../core/statistics/random.ts'
 import { seriesOf } from '../../../core/timeline/series.ts'
 import { spansOf } from '../../../core/timeline/spans.ts'
-import type { Timeline } from '../../../core/timeline/timeline.ts'
+import type { Thing, Timeline } from '../../../core/timeline/timeline.ts'
 import { HOUR, loadOn, MINUTE, START, timelineOf, tripAt } from './timeline-of.ts'
 
 const AT = START + 10 * HOUR
@@ -129,6 +129,15 @@ describe('trigger and shares of a trip', () => {
   it('does not blame a load that came on ten minutes before a sudden trip', () => {
     expect(find(logged(() => 8, { things: [run('mixer', 600)] })).trigger).toBeNull()
     expect(find(logged(() => 8, { things: [run('mixer', 20)] })).trigger).toBe('load:mixer')
+  })
+
+  it('blames no load that went off together with another: the device opened before the trip was noted', () => {
+    const late = (...things: readonly Thing[]) => find(logged(() => 8, { things })).trigger
+    expect(late(run('mixer', 900, 8))).toBe('load:mixer')
+    expect(late(run('mixer', 900, 8), run('oven', 4_000, 8))).toBeNull()
+    expect(late(run('mixer', 900, 8), run('oven', 4_000, 300))).toBe('load:mixer')
+    const circuit: Thing = { ...run('7', 7_200, 8), of: 'circuit:7', kind: 'circuit', circuit: '7' }
+    expect(late(circuit, { ...run('mixer', 900, 8), circuit: '7' })).not.toBeNull()
   })
 
   it('allows a climbing element its minutes', () => {
