@@ -1,5 +1,9 @@
 import type { Channel } from '../contract/site-sheet.ts'
+import type { Series } from '../timeline/series.ts'
 import type { Timeline } from '../timeline/timeline.ts'
+
+/** Noise of a third of the last place moves about this share of neighbouring readings. */
+const DITHERED = 0.3
 
 /** What the clamp can resolve at best: share of the reading, and mA that do not depend on it. */
 export interface ClampAccuracy {
@@ -27,6 +31,31 @@ export function ownAccuracy(timeline: Timeline, of: string): ClampAccuracy {
 /** Half-width below which no interval for a figure of `ma` may fall: ±(percent of it + digits), at least half a digit. */
 export function accuracyOf(accuracy: ClampAccuracy, ma: number): number {
   return Math.max(accuracy.share * Math.abs(ma) + accuracy.fixedMa, accuracy.digitMa / 2)
+}
+
+/**
+ * Standard uncertainty of a difference of two readings of one clamp, mA: its percentage stays, as an even spread within the stated
+ * bounds; the digits are mostly an offset, which cancels, down to the last place of both readings (`lastPlaceMa`).
+ *
+ * @see JCGM 100:2008 (GUM), 4.3.7
+ */
+export function differenceError({ share }: ClampAccuracy, ma: number, lastPlaceMa: number): number {
+  return Math.hypot((share * ma) / Math.sqrt(3), lastPlaceMa / Math.sqrt(6))
+}
+
+/**
+ * The step in which a level of many readings is still rounded, mA: the clamp's last place, or 0 where its noise moves so many
+ * readings across that their middle tells finer (dither: Widrow & Kollár 2008, chapter 19). Looks at no more than 2,000 pairs.
+ */
+export function lastPlace({ v }: Series, digitMa: number): number {
+  const stride = Math.max(1, Math.floor(v.length / 2_000))
+  let moved = 0
+  let pairs = 0
+  for (let i = 0; i + 1 < v.length; i += stride) {
+    pairs++
+    if (v[i] !== v[i + 1]) moved++
+  }
+  return pairs > 0 && moved >= DITHERED * pairs ? 0 : digitMa
 }
 
 function worst(channels: readonly Channel[]): ClampAccuracy {

@@ -9,6 +9,7 @@ import { budget } from './budget.ts'
 import { coverage } from './coverage.ts'
 import { epochs } from './epochs/epochs.ts'
 import { headroom } from './headroom.ts'
+import { insulation } from './insulation.ts'
 import { nextSteps } from './isolation.ts'
 import { withLocalTimes } from './local-text.ts'
 import { patterns } from './patterns/patterns.ts'
@@ -62,6 +63,7 @@ export function findings(evidence: Evidence): Findings {
       spread: spreading.plans[0]?.text ?? null,
     }),
     proof: proof(timeline, trips, leadingWindow(weighed)),
+    insulation: insulation(timeline, room),
     epochs: epochs(timeline),
     spread: spreading,
     notes: notesOf(timeline, weighed.frame.trips.length),

@@ -2,6 +2,7 @@ import type { Headroom } from '../contract/findings.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import { levelDrift } from './level-drift.ts'
 import { heldLevels, heldQuantile } from './standing.ts'
+import { levelTail } from './tail.ts'
 import { tripCurrent } from './trip-current.ts'
 import { rounded } from './words.ts'
 
@@ -10,7 +11,7 @@ const ADVISED_SHARE = 0.3
 
 /**
  * Standing leakage against what the device trips at (methods.md §1): time-weighted type 8 quantiles over energised
- * time, the trip current with the kind of evidence it comes from, and the slow drift of the level.
+ * time, the trip current with the kind of evidence it comes from, the slow drift of the level and its tail beyond the log.
  */
 export function headroom(timeline: Timeline): Headroom {
   const trip = tripCurrent(timeline)
@@ -35,6 +36,6 @@ export function headroom(timeline: Timeline): Headroom {
     shareOfRating: standing === null ? null : rounded(standing.p50 / timeline.rcd.ratedMa),
     advisedShare: ADVISED_SHARE,
     drift: levelDrift(timeline),
-    tail: null,
+    tail: levels === null || standing === null ? null : levelTail(timeline, levels, trip.value),
   }
 }

@@ -9,16 +9,53 @@ const MOST_SAMPLES = 401
  * than `least` readings. Unit of the series. O(log n + 401).
  */
 export function levelBetween(series: Series, from: number, to: number, least = 1): number {
-  const a = lowerBound(series.t, from)
-  const b = lowerBound(series.t, to)
-  const n = b - a
+  const sample = sampleOf(series, from, to)
+  if (sample.length < Math.max(1, least)) return Number.NaN
+  return medianInPlace(sample)
+}
+
+/**
+ * Level of a stretch whose readings are rounded: the median of grouped values, which lies within the middle step by the share of readings
+ * below and in it, so that noise across a coarse last place still tells tenths of it (Croxton & Cowden 1939, chapter 10). Readings as in
+ * `levelBetween`; without ties it is the median.
+ */
+export function groupedLevelBetween(series: Series, from: number, to: number, least = 1): number {
+  const sample = sampleOf(series, from, to)
+  const n = sample.length
   if (n < Math.max(1, least)) return Number.NaN
+  const middle = medianInPlace(sample)
+  let below = 0
+  let equal = 0
+  let lower = Number.NEGATIVE_INFINITY
+  let upper = Number.POSITIVE_INFINITY
+  for (const x of sample) {
+    if (x < middle) {
+      below++
+      lower = Math.max(lower, x)
+    } else if (x > middle) upper = Math.min(upper, x)
+    else equal++
+  }
+  if (equal < 2) return middle
+  const step = Math.min(middle - lower, upper - middle)
+  return Number.isFinite(step) ? middle + step * ((n / 2 - below) / equal - 0.5) : middle
+}
+
+/** Mean of a stretch, of the same readings as `levelBetween`: what is usual there, however it comes and goes. */
+export function meanBetween(series: Series, from: number, to: number, least = 1): number {
+  const sample = sampleOf(series, from, to)
+  if (sample.length < Math.max(1, least)) return Number.NaN
+  return sample.reduce((sum, v) => sum + v, 0) / sample.length
+}
+
+function sampleOf(series: Series, from: number, to: number): Float64Array {
+  const a = lowerBound(series.t, from)
+  const n = Math.max(0, lowerBound(series.t, to) - a)
   const count = Math.min(n, MOST_SAMPLES)
   const sample = new Float64Array(count)
   for (let k = 0; k < count; k++) {
     sample[k] = series.v[a + (count === n ? k : Math.floor((k * (n - 1)) / (count - 1)))]!
   }
-  return medianInPlace(sample)
+  return sample
 }
 
 /** The readings of [from, to) that lie in `within`, at most `most` of them, spread evenly. */

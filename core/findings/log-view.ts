@@ -95,7 +95,7 @@ export function logView(
     if (kind !== 'load') continue
     const profile = profiles.get(of)
     const line = budget.find((b) => b.of === of)
-    const sure = line?.basis === 'switching' && (line.low ?? 0) > 0 ? (line.ma ?? 0) : 0
+    const sure = line?.basis === 'switching' && line.fallback !== true && (line.low ?? 0) > 0 ? (line.ma ?? 0) : 0
     if ((profile === undefined || profile.riseMa === null) && sure === 0) continue
     const usualMa = profile?.riseMa ?? sure
     // of one or two runs the tenth largest is no figure: the usual one stands for it

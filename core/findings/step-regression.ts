@@ -1,65 +1,135 @@
 import tQuantile from '@stdlib/stats-base-dists-t-quantile'
+import { stateAt } from '../timeline/exposure.ts'
+import { intersect, totalMs } from '../timeline/spans.ts'
+import type { Thing } from '../timeline/timeline.ts'
+import { type SparseDesign, separability } from './budget/separability.ts'
+import { type WeightedFit, weightedFit } from './budget/weighted-fit.ts'
 import { medianInPlace } from './levels.ts'
 import type { StepRow, StepRows } from './step-rows.ts'
 
-/** 1.345 keeps 95 % efficiency at normal errors (Huber 1964; Huber 1981). */
-const HUBER_K = 1.345
 const MAD_TO_SIGMA = 1.4826
 /** The pooled wander counts like this many switchings when an own spread is mixed with it. */
 const POOLED_WEIGHT = 4
-/** Sandwiches of a few dozen rows run short; measured on made-up logs with known steps (tests of the budget). */
-const SMALL_SAMPLE = 1.15
+/** Neighbouring rows share a level: for a thing that goes on and off in turn the variance is half as large again. */
+const SHARED_LEVEL = 1.5
 
 /** What switching one thing changes, mA. */
 export interface StepEstimate {
   readonly ma: number
+  /** Standard error, and the degrees of freedom it rests on. */
+  readonly error: number
+  readonly freedom: number
   /** Half-width of the 90 % interval. */
   readonly half: number
   readonly switchings: number
+  /** Of a circuit, what stays when none of its known loads runs; the same as `ma` where none is known. */
+  readonly baseMa: number
   /** Positions of the things that the data cannot tell from this one; then `ma` says nothing. */
   readonly inseparable: readonly number[]
 }
 
 /**
- * Regression of level differences on state differences with Huber weights, one coefficient a thing. Standard errors are
- * the larger of a sandwich with leverage correction (HC3: MacKinnon & White 1985) and one that allows for the level shared by neighbouring
- * rows (Newey & West 1987, lag 1), mixed with the wander of the level where nothing was switched, so that two or three switchings do
- * not feign agreement. Key: position of the thing. O(rows × iterations + things³).
+ * Regression of level differences on state differences with Huber weights, one coefficient a thing; a circuit's coefficient is that of the
+ * circuit with nothing running on it, and its figure adds each known load by the share of time that it runs. Variances are a
+ * mix of the rows' own (sandwich) and of the wander of the level where nothing was switched, so that two or three
+ * switchings do not feign agreement. Key: position of the thing. O(rows × iterations + things³).
  */
-export function stepRegression(rows: StepRows, leastScale: number): Map<number, StepEstimate> {
-  const { steps } = rows
+export function stepRegression(
+  things: readonly Thing[],
+  rows: StepRows,
+  leastScale: number,
+): Map<number, StepEstimate> {
+  const steps = withoutRiders(things, rows.steps)
   const columns = [...new Set(steps.flatMap((row) => row.things))].sort((a, b) => a - b)
   const position = new Map(columns.map((thing, j) => [thing, j]))
-  const design: Design = {
+  const full: SparseDesign = {
     p: columns.length,
     index: steps.map((row) => row.things.map((thing) => position.get(thing)!)),
     signs: steps.map((row) => row.signs),
     y: Float64Array.from(steps, (row) => row.ma),
   }
-  const { basis, partners } = separability(design)
-  const fit = huberFit(design, basis, Math.max(wanderOf(rows, basis.length), leastScale))
+  const { basis, partners } = separability(full)
+  const wander = Math.max(wanderOf(rows, basis.length), leastScale, 1e-9)
+  const long = Math.max(wander, longWander(rows) ?? 0)
+  const sds = Float64Array.from(steps, (row) => (row.long ? long : wander))
+  const fit = weightedFit(reduced(full, basis), sds)
+  const known = new Map<number, number>()
+  columns.forEach((thing, j) => {
+    const b = basis.indexOf(j)
+    if (b >= 0 && partners[j]!.length === 0) known.set(thing, b)
+  })
+  const contrasts = [...known].map(([thing, b]) => contrastOf(things, thing, b, known))
+  const variances = fit.variancesOf(contrasts)
+  const roam = roamOf(things, rows, known, fit)
   const estimates = new Map<number, StepEstimate>()
   columns.forEach((thing, j) => {
-    const switchings = design.index.filter((row) => row.includes(j)).length
+    const own = steps.filter((row) => row.things.includes(thing))
+    const switchings = own.length
     const inseparable = partners[j]!.map((k) => columns[k]!)
-    const b = basis.indexOf(j)
-    if (inseparable.length > 0 || b < 0) {
-      estimates.set(thing, { ma: Number.NaN, half: Number.NaN, switchings, inseparable })
+    const c = [...known.keys()].indexOf(thing)
+    if (c < 0) {
+      const nothing = { ma: Number.NaN, error: Number.NaN, freedom: 0, half: Number.NaN, baseMa: Number.NaN }
+      estimates.set(thing, { ...nothing, switchings, inseparable })
       return
     }
-    const own = Math.max(0, switchings - 1)
-    const variance = (POOLED_WEIGHT * fit.pooled[b]! + own * fit.own[b]!) / (POOLED_WEIGHT + own)
-    const half = SMALL_SAMPLE * tQuantile(0.95, POOLED_WEIGHT + own) * Math.sqrt(variance)
-    estimates.set(thing, { ma: fit.coefficients[b]!, half, switchings, inseparable })
+    const free = Math.max(0, switchings - 1)
+    const model = SHARED_LEVEL * variances.model[c]!
+    const unseen = unseenVariance(things, thing, own, roam)
+    const variance = (POOLED_WEIGHT * model + free * variances.sandwich[c]!) / (POOLED_WEIGHT + free) + unseen
+    const error = Math.sqrt(variance)
+    const freedom = POOLED_WEIGHT + free
+    const ma = contrasts[c]!.reduce((sum, [b, weight]) => sum + weight * fit.coefficients[b]!, 0)
+    const half = tQuantile(0.95, freedom) * error
+    const baseMa = fit.coefficients[known.get(thing)!]!
+    estimates.set(thing, { ma, error, freedom, half, switchings, baseMa, inseparable })
   })
   return estimates
 }
 
-interface Design {
-  readonly p: number
-  readonly index: readonly (readonly number[])[]
-  readonly signs: readonly (readonly number[])[]
-  readonly y: Float64Array
+/** Rows in which a load that never changes without its circuit is part of the circuit. */
+function withoutRiders(things: readonly Thing[], steps: readonly StepRow[]): readonly StepRow[] {
+  const circuitAt = new Map(
+    things.flatMap((thing, i) => (thing.kind === 'circuit' ? [[thing.circuit, i] as const] : [])),
+  )
+  const withIts = (row: StepRow, thing: number): boolean =>
+    things[thing]!.kind === 'load' && row.things.includes(circuitAt.get(things[thing]!.circuit) ?? -1)
+  const alone = new Set<number>()
+  for (const row of steps) for (const thing of row.things) if (!withIts(row, thing)) alone.add(thing)
+  return steps.map((row) => {
+    const stay = row.things.map((thing) => alone.has(thing))
+    if (stay.every(Boolean)) return row
+    return { ...row, things: row.things.filter((_, k) => stay[k]), signs: row.signs.filter((_, k) => stay[k]) }
+  })
+}
+
+function reduced(full: SparseDesign, basis: readonly number[]): SparseDesign {
+  const at = new Map(basis.map((j, b) => [j, b]))
+  return {
+    p: basis.length,
+    index: full.index.map((row) => row.flatMap((j) => at.get(j) ?? [])),
+    signs: full.signs.map((row, i) => row.filter((_, k) => at.has(full.index[i]![k]!))),
+    y: full.y,
+  }
+}
+
+/** A load's own coefficient; a circuit's, and its loads' by the share of its time in which they run. */
+function contrastOf(
+  things: readonly Thing[],
+  thing: number,
+  b: number,
+  known: ReadonlyMap<number, number>,
+): (readonly [number, number])[] {
+  const contrast: (readonly [number, number])[] = [[b, 1]]
+  const { kind, circuit, state } = things[thing]!
+  if (kind === 'load') return contrast
+  things.forEach((load, k) => {
+    const column = known.get(k)
+    if (load.kind !== 'load' || load.circuit !== circuit || column === undefined) return
+    const on = totalMs(load.state.on)
+    const off = totalMs(intersect(load.state.off, state.on))
+    if (on > 0) contrast.push([column, on / (on + off)])
+  })
+  return contrast
 }
 
 /**
@@ -72,189 +142,38 @@ function wanderOf({ steps, placebos }: StepRows, coefficients: number): number {
   return steps.length > coefficients + 3 || steps.length === 0 ? seen : Math.max(seen, 0.2 * spread(steps))
 }
 
+/** The same for levels over hours; null without places enough to see it. */
+function longWander({ longPlacebos }: StepRows): number | null {
+  return longPlacebos.length >= 4 ? spread(longPlacebos) : null
+}
+
 function spread(rows: readonly StepRow[]): number {
   return MAD_TO_SIGMA * medianInPlace(Float64Array.from(rows, (row) => Math.abs(row.ma)))
 }
 
-interface Fit {
-  readonly coefficients: Float64Array
-  /** Variances by the wander of the level, and by the residuals of the rows themselves. */
-  readonly pooled: Float64Array
-  readonly own: Float64Array
+/** Spread of the level from time to time that no known thing explains, as a standard deviation, mA. */
+function roamOf(
+  things: readonly Thing[],
+  { placebos }: StepRows,
+  known: ReadonlyMap<number, number>,
+  fit: WeightedFit,
+): number {
+  if (placebos.length < 5) return 0
+  const rest = Float64Array.from(placebos, ({ at, before }) => {
+    let level = before
+    for (const [thing, b] of known) if (stateAt(things[thing]!.state, at) === 'on') level -= fit.coefficients[b]!
+    return level
+  })
+  const middle = medianInPlace(rest.slice())
+  return MAD_TO_SIGMA * medianInPlace(rest.map((level) => Math.abs(level - middle)))
 }
 
-function huberFit(design: Design, basis: readonly number[], leastScale: number): Fit {
-  const m = basis.length
-  const n = design.y.length
-  const at = new Map(basis.map((j, b) => [j, b]))
-  const index = design.index.map((row) => row.map((j) => at.get(j) ?? -1))
-  const weights = new Float64Array(n).fill(1)
-  const residuals = new Float64Array(n)
-  let coefficients: Float64Array = new Float64Array(m)
-  let inverse: Float64Array = new Float64Array(m * m)
-  let scale = leastScale
-  for (let iteration = 0; iteration < 30; iteration++) {
-    inverse = inverted(gram(index, design.signs, weights, m), m)
-    const next = product(inverse, moments(index, design, weights, m), m)
-    let moved = 0
-    for (let b = 0; b < m; b++) moved = Math.max(moved, Math.abs(next[b]! - coefficients[b]!))
-    coefficients = next
-    for (let i = 0; i < n; i++) residuals[i] = design.y[i]! - fitted(index[i]!, design.signs[i]!, coefficients)
-    scale = Math.max(leastScale, residualScale(residuals, m))
-    if (scale === 0) break
-    for (let i = 0; i < n; i++) weights[i] = Math.min(1, (HUBER_K * scale) / Math.max(1e-12, Math.abs(residuals[i]!)))
-    if (moved < 1e-7 && iteration > 2) break
-  }
-  const pooled = new Float64Array(m)
-  // Neighbouring rows share a level: for a thing that goes on and off in turn the variance is half as large again.
-  for (let b = 0; b < m; b++) pooled[b] = 1.5 * scale * scale * inverse[b * m + b]!
-  return { coefficients, pooled, own: sandwich(index, design.signs, weights, residuals, inverse, m) }
-}
-
-/** Scaled median of the residuals' sizes, n / (n − m) larger for what the fit used up; 0 when it used up all. */
-function residualScale(residuals: Float64Array, m: number): number {
-  const n = residuals.length
-  if (n <= m) return 0
-  const sizes = residuals.map(Math.abs)
-  return MAD_TO_SIGMA * medianInPlace(sizes) * Math.sqrt(n / (n - m))
-}
-
-function sandwich(
-  index: readonly (readonly number[])[],
-  signs: readonly (readonly number[])[],
-  weights: Float64Array,
-  residuals: Float64Array,
-  inverse: Float64Array,
-  m: number,
-): Float64Array {
-  const plain = new Float64Array(m)
-  const lagged = new Float64Array(m)
-  let previous = new Float64Array(m)
-  for (let i = 0; i < index.length; i++) {
-    const influence = new Float64Array(m)
-    let leverage = 0
-    index[i]!.forEach((b, k) => {
-      if (b < 0) return
-      for (let c = 0; c < m; c++) influence[c]! += inverse[c * m + b]! * signs[i]![k]!
-    })
-    index[i]!.forEach((b, k) => {
-      if (b >= 0) leverage += influence[b]! * signs[i]![k]! * weights[i]!
-    })
-    const size = (weights[i]! * residuals[i]!) / Math.max(0.1, 1 - leverage)
-    for (let c = 0; c < m; c++) {
-      influence[c]! *= size
-      plain[c]! += influence[c]! ** 2
-      lagged[c]! += 2 * influence[c]! * previous[c]!
-    }
-    previous = influence
-  }
-  return plain.map((v, b) => Math.max(v, v + lagged[b]!))
-}
-
-function fitted(index: readonly number[], signs: readonly number[], coefficients: Float64Array): number {
-  let sum = 0
-  for (let k = 0; k < index.length; k++) if (index[k]! >= 0) sum += signs[k]! * coefficients[index[k]!]!
-  return sum
-}
-
-function gram(
-  index: readonly (readonly number[])[],
-  signs: readonly (readonly number[])[],
-  weights: Float64Array | null,
-  m: number,
-): Float64Array {
-  const g = new Float64Array(m * m)
-  for (let i = 0; i < index.length; i++) {
-    const row = index[i]!
-    for (let k = 0; k < row.length; k++) {
-      if (row[k]! < 0) continue
-      for (let l = 0; l < row.length; l++) {
-        if (row[l]! >= 0) g[row[k]! * m + row[l]!]! += (weights?.[i] ?? 1) * signs[i]![k]! * signs[i]![l]!
-      }
-    }
-  }
-  return g
-}
-
-function moments(
-  index: readonly (readonly number[])[],
-  design: Design,
-  weights: Float64Array,
-  m: number,
-): Float64Array {
-  const v = new Float64Array(m)
-  for (let i = 0; i < index.length; i++) {
-    index[i]!.forEach((b, k) => {
-      if (b >= 0) v[b]! += weights[i]! * design.signs[i]![k]! * design.y[i]!
-    })
-  }
-  return v
-}
-
-function product(a: Float64Array, v: Float64Array, m: number): Float64Array {
-  const out = new Float64Array(m)
-  for (let r = 0; r < m; r++) for (let c = 0; c < m; c++) out[r]! += a[r * m + c]! * v[c]!
-  return out
-}
-
-/** Inverse of a positive definite matrix by Gauss–Jordan elimination; pivots lie on the diagonal. */
-function inverted(source: Float64Array, m: number): Float64Array {
-  const a = source.slice()
-  const inverse = new Float64Array(m * m)
-  for (let r = 0; r < m; r++) inverse[r * m + r] = 1
-  for (let pivot = 0; pivot < m; pivot++) {
-    const scale = a[pivot * m + pivot]!
-    for (let c = 0; c < m; c++) {
-      a[pivot * m + c]! /= scale
-      inverse[pivot * m + c]! /= scale
-    }
-    for (let r = 0; r < m; r++) {
-      const factor = a[r * m + pivot]!
-      if (r === pivot || factor === 0) continue
-      for (let c = 0; c < m; c++) {
-        a[r * m + c]! -= factor * a[pivot * m + c]!
-        inverse[r * m + c]! -= factor * inverse[pivot * m + c]!
-      }
-    }
-  }
-  return inverse
-}
-
-/**
- * Which columns make a basis, and for each column the others it can be traded against without changing a single row:
- * its coefficient is then not determined. Exact, for the Gram matrix holds small whole numbers.
- */
-function separability(design: Design): { basis: number[]; partners: number[][] } {
-  const { p } = design
-  const a = gram(design.index, design.signs, null, p)
-  const tolerance = 1e-9 * Math.max(1, design.y.length)
-  const pivots: number[] = []
-  let row = 0
-  for (let column = 0; column < p && row < p; column++) {
-    let best = row
-    for (let r = row + 1; r < p; r++) if (Math.abs(a[r * p + column]!) > Math.abs(a[best * p + column]!)) best = r
-    if (Math.abs(a[best * p + column]!) <= tolerance) continue
-    for (let c = 0; c < p; c++) {
-      const held = a[row * p + c]!
-      a[row * p + c] = a[best * p + c]!
-      a[best * p + c] = held
-    }
-    const scale = a[row * p + column]!
-    for (let c = 0; c < p; c++) a[row * p + c]! /= scale
-    for (let r = 0; r < p; r++) {
-      const factor = a[r * p + column]!
-      if (r === row || factor === 0) continue
-      for (let c = 0; c < p; c++) a[r * p + c]! -= factor * a[row * p + c]!
-    }
-    pivots.push(column)
-    row++
-  }
-  const partners: Set<number>[] = Array.from({ length: p }, () => new Set())
-  for (let free = 0; free < p; free++) {
-    if (pivots.includes(free)) continue
-    // The null vector of this free column: itself, and what its row entries ask of the pivots.
-    const members = [free, ...pivots.filter((_, r) => Math.abs(a[r * p + free]!) > 1e-6)]
-    for (const j of members) for (const k of members) if (j !== k) partners[j]!.add(k)
-  }
-  return { basis: pivots, partners: partners.map((set) => [...set].sort((x, y) => x - y)) }
+/** What ran unseen on a circuit as it was switched: its part of what roams, by its share of the loads whose state nobody knows. */
+function unseenVariance(things: readonly Thing[], thing: number, own: readonly StepRow[], roam: number): number {
+  const { kind, circuit } = things[thing]!
+  if (kind === 'load') return 0
+  const unknown = things.filter((load) => load.kind === 'load' && load.state.on.length === 0)
+  const here = unknown.filter((load) => load.circuit === circuit).length
+  const short = own.filter((row) => !row.long).length
+  return short === 0 || here === 0 ? 0 : (roam * roam * here * short) / unknown.length / own.length ** 2
 }

@@ -1,12 +1,16 @@
 import { type Series, usualInterval } from '../timeline/series.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
-import { levelBetween } from './levels.ts'
+import { groupedLevelBetween, meanBetween } from './levels.ts'
 
 const MINUTE_MS = 60_000
 /** Only so much of a long piece next to an edge is looked at: over more the level drifts. */
-const BESIDE_MS = 30 * MINUTE_MS
+const BESIDE_MS = 60 * MINUTE_MS
 /** Pieces too short for a level are bridged, as long as no more than this is skipped. */
 const BRIDGE_MS = 10 * MINUTE_MS
+/** Where a circuit with unseen loads is switched, the usual level of so long a time is asked, not what ran just then. */
+const LONG_MS = 24 * 60 * MINUTE_MS
+/** Levels over less than this say nothing of what is usual. */
+const LEAST_LONG_MS = 4 * 60 * MINUTE_MS
 /** Most differences without any switching that are taken to measure the wander of the level. */
 const MOST_PLACEBOS = 400
 
@@ -19,12 +23,16 @@ export interface StepRow {
   /** Positions in `things`, and +1 for on, −1 for off. Empty for a placebo: a place where nothing named changed. */
   readonly things: readonly number[]
   readonly signs: readonly number[]
+  /** Whether the levels are means over hours. */
+  readonly long: boolean
 }
 
 export interface StepRows {
   /** By time. */
   readonly steps: readonly StepRow[]
   readonly placebos: readonly StepRow[]
+  /** The same for means over hours; empty where no step asks for them. */
+  readonly longPlacebos: readonly StepRow[]
 }
 
 interface Piece {
@@ -34,14 +42,14 @@ interface Piece {
 
 /**
  * Cuts the logged time wherever a circuit or load changes and takes the differences of neighbouring robust levels, a bit
- * away from the edges (methods.md §2). Where a circuit changes, the change is its own and what its loads do with it is
- * part of it. Linear in changes × readings looked at near each (at most 401).
+ * away from the edges (methods.md §2). Where a circuit changes, so do those of its loads that ran on it. Linear in changes × readings looked at near each (at most 401).
  */
 export function stepRows(timeline: Timeline, leakage: Series): StepRows {
   const interval = usualInterval(leakage)
-  if (Number.isNaN(interval)) return { steps: [], placebos: [] }
+  if (Number.isNaN(interval)) return { steps: [], placebos: [], longPlacebos: [] }
   const edges = edgesOf(timeline)
   const pieces = piecesOf(timeline, edges, interval)
+  const hasUnseen = circuitsWithUnseen(timeline.things)
   const steps: StepRow[] = []
   let e = 0
   let held: { piece: Piece; stretch: number } | null = null
@@ -49,18 +57,22 @@ export function stepRows(timeline: Timeline, leakage: Series): StepRows {
     if (held !== null && held.stretch === stretch && piece.from - held.piece.to <= BRIDGE_MS) {
       while (e < edges.length && edges[e]!.at < held.piece.to) e++
       const changed = new Map<number, number>()
-      const circuits = new Set<string>()
       for (; e < edges.length && edges[e]!.at <= piece.from; e++) {
         const { thing, on } = edges[e]!
         changed.set(thing, (changed.get(thing) ?? 0) + (on ? 1 : -1))
-        if (timeline.things[thing]!.kind === 'circuit') circuits.add(timeline.things[thing]!.circuit)
       }
-      const row = rowOf(timeline.things, leakage, held.piece, piece, interval, changed, circuits)
+      const long = [...changed.keys()].every((thing) => hasUnseen.has(thing))
+      const row = rowOf(leakage, held.piece, piece, interval, changed, long)
       if (row !== null) steps.push(row)
     }
     held = { piece, stretch }
   }
-  return { steps, placebos: placebosOf(leakage, pieces, interval) }
+  const long = steps.some((row) => row.long)
+  return {
+    steps,
+    placebos: placebosOf(leakage, pieces, interval),
+    longPlacebos: long ? longPlacebosOf(leakage, pieces, interval) : [],
+  }
 }
 
 interface Edge {
@@ -103,29 +115,35 @@ function piecesOf(timeline: Timeline, edges: readonly Edge[], interval: number):
   return list
 }
 
+/** Circuits on which a load hangs whose state nobody knows, by position. */
+function circuitsWithUnseen(things: readonly Thing[]): Set<number> {
+  const unseen = new Set(things.filter((t) => t.kind === 'load' && t.state.on.length === 0).map((t) => t.circuit))
+  return new Set(things.flatMap((t, i) => (t.kind === 'circuit' && unseen.has(t.circuit) ? [i] : [])))
+}
+
 function rowOf(
-  things: readonly Thing[],
   leakage: Series,
   a: Piece,
   b: Piece,
   interval: number,
   changed: ReadonlyMap<number, number>,
-  circuits: ReadonlySet<string>,
+  mayBeLong: boolean,
 ): StepRow | null {
-  const list: number[] = []
+  const things: number[] = []
   const signs: number[] = []
   for (const [thing, sign] of changed) {
     if (sign === 0) continue
-    const { kind, circuit } = things[thing]!
-    if (kind === 'load' && circuits.has(circuit)) continue
-    list.push(thing)
+    things.push(thing)
     signs.push(Math.sign(sign))
   }
-  if (list.length === 0) return null
-  const before = levelBetween(leakage, Math.max(a.from, a.to - BESIDE_MS) + lead(a, interval), a.to - interval / 2, 2)
-  const after = levelBetween(leakage, b.from + settling(interval), Math.min(b.to, b.from + BESIDE_MS) - interval / 2, 2)
+  if (things.length === 0) return null
+  const long = mayBeLong && Math.min(a.to - a.from, b.to - b.from) >= LEAST_LONG_MS
+  const beside = long ? LONG_MS : BESIDE_MS
+  const level = long ? meanBetween : groupedLevelBetween
+  const before = level(leakage, Math.max(a.from, a.to - beside) + lead(a, interval), a.to - interval / 2, 2)
+  const after = level(leakage, b.from + settling(interval), Math.min(b.to, b.from + beside) - interval / 2, 2)
   if (Number.isNaN(before + after)) return null
-  return { at: b.from, ma: after - before, before, things: list, signs }
+  return { at: b.from, ma: after - before, before, things, signs, long }
 }
 
 /** What to leave out at the beginning of the earlier piece: its own settling, unless its far end is out of sight anyway. */
@@ -153,9 +171,29 @@ function placebosOf(
     const { piece, at } = places[i]!
     const from = Math.max(piece.from + settling(interval), at - BESIDE_MS)
     const to = Math.min(piece.to, at + BESIDE_MS)
-    const before = levelBetween(leakage, from, at - interval / 2, 2)
-    const after = levelBetween(leakage, at + settling(interval), to - interval / 2, 2)
-    if (!Number.isNaN(before + after)) rows.push({ at, ma: after - before, before, things: [], signs: [] })
+    const before = groupedLevelBetween(leakage, from, at - interval / 2, 2)
+    const after = groupedLevelBetween(leakage, at + settling(interval), to - interval / 2, 2)
+    if (!Number.isNaN(before + after)) rows.push({ at, ma: after - before, before, things: [], signs: [], long: false })
+  }
+  return rows
+}
+
+/** Half of the span of a long placebo: what a switched piece usually offers. */
+const LONG_PLACEBO_MS = 12 * 60 * MINUTE_MS
+
+function longPlacebosOf(
+  leakage: Series,
+  pieces: readonly { piece: Piece; stretch: number }[],
+  interval: number,
+): StepRow[] {
+  const rows: StepRow[] = []
+  for (const { piece } of pieces) {
+    for (let at = piece.from + LONG_PLACEBO_MS; at + LONG_PLACEBO_MS <= piece.to; at += LONG_PLACEBO_MS) {
+      const before = meanBetween(leakage, at - LONG_PLACEBO_MS + settling(interval), at, 2)
+      const after = meanBetween(leakage, at, at + LONG_PLACEBO_MS - interval / 2, 2)
+      if (!Number.isNaN(before + after))
+        rows.push({ at, ma: after - before, before, things: [], signs: [], long: true })
+    }
   }
   return rows
 }

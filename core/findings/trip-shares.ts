@@ -20,9 +20,8 @@ export function sharesAt(timeline: Timeline, at: number, lines: readonly BudgetL
     const line = byOf.get(thing.of)
     if (line === undefined || line.ma === null || stateBefore(thing.state, at) !== 'on') continue
     const seen = line.basis === 'channel' ? lastReading(thing, at) : null
-    const when = seen === null ? measuredAt(timeline, thing, line) : [at]
-    const riding = thing.kind === 'circuit' ? ridingMa(loads.get(thing.circuit) ?? [], when, byOf) : 0
-    const own = (seen ?? line.ma) - riding
+    const own =
+      (seen ?? line.baseMa ?? line.ma) - ridingMa(timeline, thing, line, seen === null ? null : at, loads, byOf)
     if (own > 0) shares.push({ of: thing.of, ma: rounded(own) })
   }
   return shares.sort((a, b) => b.ma - a.ma || (a.of < b.of ? -1 : 1))
@@ -35,17 +34,24 @@ function lastReading({ leakage }: Thing, at: number): number | null {
   return i >= 0 && at - leakage.t[i]! <= GAP_INTERVALS * usualInterval(leakage) ? leakage.v[i]! : null
 }
 
-/** Instants up to which the circuit stood as its figure describes it. */
-function measuredAt(timeline: Timeline, thing: Thing, line: BudgetLine): number[] {
-  if (line.basis === 'survey') {
-    return timeline.tests.flatMap((test) => (test.kind === 'clamp' && test.off.includes(thing.of) ? [test.at] : []))
-  }
-  // A load that comes on with its circuit is on just after, one that goes off with it just before.
-  return thing.changes.map(({ at, on }) => (on ? at + 2 : at))
-}
-
-/** Mean of what known loads added at those instants, mA. */
-function ridingMa(loads: readonly Thing[], when: readonly number[], byOf: ReadonlyMap<string, BudgetLine>): number {
+/**
+ * What known loads add to a circuit's figure, mA: by its own clamp those on `at` the trip, by a survey those on at the readings. A
+ * figure for the circuit with nothing running holds none.
+ */
+function ridingMa(
+  timeline: Timeline,
+  thing: Thing,
+  line: BudgetLine,
+  at: number | null,
+  loadsOf: ReadonlyMap<string, readonly Thing[]>,
+  byOf: ReadonlyMap<string, BudgetLine>,
+): number {
+  if (thing.kind === 'load' || (at === null && line.baseMa !== undefined)) return 0
+  const loads = loadsOf.get(thing.circuit) ?? []
+  const when =
+    at !== null
+      ? [at]
+      : timeline.tests.flatMap((test) => (test.kind === 'clamp' && test.off.includes(thing.of) ? [test.at] : []))
   if (when.length === 0) return 0
   let sum = 0
   for (const at of when) {

@@ -132,8 +132,9 @@ describe('budget', () => {
       },
     }
     const [line] = budget(accurate)
-    // ±(2 % of 2 mA + 5 digits of 0.01 mA) = ±0.09 mA
-    expect(line!.high! - line!.low!).toBeGreaterThanOrEqual(0.18 - 1e-6)
+    // 2 % of 2 mA as an even spread within ±0.04 mA: standard uncertainty 0.04/√3 (JCGM 100:2008, 4.3.7), times 1.645 for
+    // 90 %, both ways. The digits are an offset, which cancels in a difference.
+    expect(line!.high! - line!.low!).toBeGreaterThanOrEqual((2 * 1.645 * 0.04) / Math.sqrt(3))
   })
 
   it('scales with the readings', () => {
