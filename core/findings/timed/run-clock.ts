@@ -28,6 +28,7 @@ interface HourClock {
   readonly instant: (hours: number) => number
 }
 
+/** The clocks of one span: the wall, the sun and the supply, and what of it the log watched. */
 export function runClock(timeline: Timeline, { watched, stepMs }: RaisedRuns): RunClock {
   const seen: Spans = spansOf(watched)
   const { latitude, longitude } = timeline.sheet
