@@ -1,6 +1,6 @@
 import type { BudgetLine } from '../contract/findings.ts'
 import { quantile } from '../statistics/quantile.ts'
-import { stateAt } from '../timeline/exposure.ts'
+import { type State, stateAt } from '../timeline/exposure.ts'
 import { usualInterval } from '../timeline/series.ts'
 import { type Spans, spanAt, spansOf } from '../timeline/spans.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
@@ -119,29 +119,30 @@ function runOf(timeline: Timeline, thing: Thing, index: number, at: number, step
   const before = levelBetween(leakage, beforeFrom, at - interval / 2)
   if (Number.isNaN(before)) return null
   const earlier = (beforeFrom + at) / 2
+  const were = timeline.things.map((other, k): State => {
+    const isMute = k === index || steps[k] === 0 || other.changes.length === 0
+    return isMute ? 'unknown' : stateAt(other.state, earlier)
+  })
   return PROFILE_MINUTES.map(([from, to]) => {
     // Readings of the first seconds may still be those of the state before.
     const a = at + Math.max(from * MINUTE_MS, Math.min(2 * interval, 20_000))
     const b = Math.min(at + to * MINUTE_MS, run.to, stretch.to)
     const level = b > a ? levelBetween(leakage, a, b) : Number.NaN
-    return Number.isNaN(level) ? level : level - before - othersBetween(timeline, index, earlier, (a + b) / 2, steps)
+    return Number.isNaN(level) ? level : level - before - othersSince(timeline, were, (a + b) / 2, steps)
   })
 }
 
-/** What the other things have added since, mA, by the budget. Circuits and their loads are never counted twice. */
-function othersBetween(
-  timeline: Timeline,
-  self: number,
-  earlier: number,
-  later: number,
-  steps: readonly number[],
-): number {
+/**
+ * What the other things have added since, mA, by the budget; unknown is who is not asked. Circuits and their loads are never
+ * counted twice.
+ */
+function othersSince(timeline: Timeline, were: readonly State[], later: number, steps: readonly number[]): number {
   let sum = 0
   timeline.things.forEach((other, k) => {
-    if (k === self || steps[k] === 0 || other.changes.length === 0) return
-    const was = stateAt(other.state, earlier)
+    const was = were[k]!
+    if (was === 'unknown') return
     const is = stateAt(other.state, later)
-    if (was === 'unknown' || is === 'unknown' || was === is) return
+    if (is === 'unknown' || was === is) return
     sum += is === 'on' ? steps[k]! : -steps[k]!
   })
   return sum

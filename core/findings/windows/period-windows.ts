@@ -118,14 +118,18 @@ function alikeWindows(
         binOthers[bin]! += others[i]!
       }
       BINS_WIDE.forEach((wide, w) => {
+        let next = 0
+        for (let k = 0; k < wide - 1; k++) next += counts[k]!
         for (let k = 0; k < BINS; k++) {
-          let [hits, mark, other] = [0, 0, 0]
+          const hits = next + counts[(k + wide - 1) % BINS]!
+          next = hits - counts[k]!
+          if (hits < least[w]!) continue
+          let mark = 0
+          let other = 0
           for (let b = k; b < k + wide; b++) {
-            hits += counts[b % BINS]!
             mark = (mark + binMarks[b % BINS]!) >>> 0
             other += binOthers[b % BINS]!
           }
-          if (hits < least[w]!) continue
           const key = (other % 2 ** 20) * TURN + mark
           const alike = groups[w]!.get(key)
           if (alike === undefined) {
