@@ -22,6 +22,8 @@ export interface CostWish {
   readonly loads: number
   /** About so many trips. */
   readonly trips: number
+  /** How often states and the load current are written beside their changes; by default once a minute. */
+  readonly statesMs?: number
   readonly seed?: number
 }
 
@@ -30,7 +32,7 @@ export interface CostWish {
  * channel, the others written down as they are switched), weather, an outdoor circuit that suffers in rain, one load
  * that leaks at random while it runs, and now and then a surge.
  */
-export function costSite({ days, intervalMs, loads: count, trips, seed = 5 }: CostWish): Simulated {
+export function costSite({ days, intervalMs, loads: count, trips, statesMs, seed = 5 }: CostWish): Simulated {
   const random = draws(seed, 'cost')
   const loads = Array.from({ length: count }, (_, i): LoadPlan => {
     const load = drawAppliance(APPLIANCES[i % APPLIANCES.length]!, random)
@@ -74,7 +76,7 @@ export function costSite({ days, intervalMs, loads: count, trips, seed = 5 }: Co
   const plan: Plan = {
     installation,
     people: PEOPLE,
-    logger: loggerOf(intervalMs),
+    logger: loggerOf(intervalMs, statesMs ?? 60_000),
     from: FROM,
     to,
     seed,
@@ -93,7 +95,7 @@ const PEOPLE: People = {
   suspects: ['load:mixer'],
 }
 
-function loggerOf(intervalMs: number): Logger {
+function loggerOf(intervalMs: number, statesMs: number): Logger {
   return {
     intervalMs,
     resolutionMa: 0.01,
@@ -102,7 +104,7 @@ function loggerOf(intervalMs: number): Logger {
     gaps: [],
     clockMs: 0,
     clockMsPerDay: 0,
-    statesMs: Math.max(60_000, intervalMs),
+    statesMs,
     statesOnChange: true,
     loadCurrent: true,
     weather: true,
