@@ -103,6 +103,10 @@ export const SiteSummary = z.object({
   rcds: z.int(),
   channels: z.int(),
   lastReadingAt: InstantOut.nullable(),
+  openMatters: z
+    .int()
+    .optional()
+    .meta({ description: 'silent loggers, trips and high levels that last; see /alerts/matters' }),
   updatedAt: InstantOut,
 })
 

@@ -24,6 +24,8 @@ interface Seen {
   /** Learned before this start, or guessed from what one post held. */
   guessMs: number | undefined
   declaredMs: number | undefined
+  /** A gap so long that it was a silence: no rhythm is learned from one alone. */
+  oddMs: number | undefined
   savedMs: number | undefined
 }
 
@@ -34,6 +36,7 @@ const GAPS_THAT_TELL_RHYTHM = 6
 /** Gaps that differ so much have no rhythm: a channel that posts when something changes. */
 const NO_RHYTHM = 5
 const TIMES_LOOKED_AT = 64
+const ODD = 2.5
 
 /**
  * When which channel last posted, and how often it does. It goes by arrivals, not by the times of readings: a logger
@@ -66,10 +69,7 @@ export class Arrivals {
       const seen = this.#seen(site, channel)
       const gap = elapsed - seen.lastElapsed
       // The first gap after a start is longer by the time the server was away, or began with nothing.
-      if (known && seen.lastAt !== null && gap > 0) {
-        seen.gaps.push(gap)
-        if (seen.gaps.length > GAPS_KEPT) seen.gaps.shift()
-      }
+      if (known && seen.lastAt !== null && gap > 0) learn(seen, gap)
       seen.lastElapsed = elapsed
       seen.lastAt = this.#now()
       seen.declaredMs = expected?.get(channel) ?? seen.declaredMs
@@ -119,11 +119,25 @@ export class Arrivals {
       gaps: [],
       guessMs: undefined,
       declaredMs: undefined,
+      oddMs: undefined,
       savedMs: undefined,
     }
     channels.set(channel, seen)
     return seen
   }
+}
+
+/** A silence is no rhythm; two long gaps in a row are a new one. */
+function learn(seen: Seen, gap: number): void {
+  const pace = seen.gaps.length < GAPS_THAT_TELL ? null : paceOf(seen)
+  if (pace !== null && gap > ODD * pace && seen.oddMs === undefined) {
+    seen.oddMs = gap
+    return
+  }
+  if (pace !== null && gap > ODD * pace && seen.oddMs !== undefined) seen.gaps.push(seen.oddMs)
+  seen.oddMs = undefined
+  seen.gaps.push(gap)
+  while (seen.gaps.length > GAPS_KEPT) seen.gaps.shift()
 }
 
 function paceOf({ gaps, guessMs, declaredMs }: Seen): number | null {

@@ -17,8 +17,8 @@ const FIRST_WAIT_MS = 30_000
 const MOST_WAIT_MS = 6 * 3_600_000
 /** With these waits about a week. */
 const MOST_ATTEMPTS = 38
-const READ_AT_ONCE = 1_000
-const PLACES_AT_ONCE = 8
+const READ_AT_ONCE = 10_000
+const PLACES_AT_ONCE = 16
 
 /**
  * Delivers what waits in the outbox. A delivery is attempted until the place takes it, after waits that double; what
@@ -27,9 +27,10 @@ const PLACES_AT_ONCE = 8
  */
 export class Outbox {
   readonly #options: OutboxOptions
-  readonly #inHand = new Set<number>()
-  #running: Promise<void> | undefined
-  #again = false
+  /** Places that something is on its way to: one that does not answer holds up no other. */
+  readonly #busy = new Map<string, Promise<void>>()
+  readonly #reading = new Set<Promise<void>>()
+  #left = false
   #stopped = false
 
   constructor(options: OutboxOptions) {
@@ -38,55 +39,75 @@ export class Outbox {
 
   /** Begins to deliver what is due, in the background. */
   run(onError: (error: unknown) => void): void {
-    this.#again = true
-    this.#running ??= this.#deliverAll()
+    if (this.#stopped) return
+    const reading = this.#begin(onError)
       .catch(onError)
-      .finally(() => {
-        this.#running = undefined
-      })
+      .finally(() => this.#reading.delete(reading))
+    this.#reading.add(reading)
   }
 
   /** Resolves when what was begun is done. */
   async settled(): Promise<void> {
-    await this.#running
+    while (this.#reading.size + this.#busy.size > 0) await Promise.all([...this.#reading, ...this.#busy.values()])
   }
 
   /** Begins nothing more; resolves when what is in hand is written down. */
   async stop(): Promise<void> {
     this.#stopped = true
-    await this.#running
+    await this.settled()
   }
 
-  async #deliverAll(): Promise<void> {
-    while (this.#again && !this.#stopped) {
-      this.#again = false
-      await this.#deliver()
-    }
-  }
-
-  async #deliver(): Promise<void> {
+  async #begin(onError: (error: unknown) => void): Promise<void> {
     const { store, now } = this.#options
     const at = now()
-    const due = await store.alerts.due(at, at + MOST_WAIT_MS, READ_AT_ONCE)
-    const places = byPlace(due)
-    const work = async (): Promise<void> => {
-      for (let place = places.shift(); place !== undefined && !this.#stopped; place = places.shift()) {
-        await this.#deliverTo(place)
+    // What was on its way while this list was read may have arrived since.
+    const onTheirWay = new Set(this.#busy.keys())
+    const due = await this.#notWaiting(await store.alerts.due(at, at + MOST_WAIT_MS, READ_AT_ONCE), at)
+    for (const [place, deliveries] of byPlace(due)) {
+      if (this.#stopped) return
+      if (onTheirWay.has(place) || this.#busy.has(place) || this.#busy.size >= PLACES_AT_ONCE) {
+        this.#left = true
+        continue
       }
+      const work = this.#deliverTo(deliveries)
+        .catch(onError)
+        .finally(() => {
+          this.#busy.delete(place)
+          this.#goOn(onError)
+        })
+      this.#busy.set(place, work)
     }
-    await Promise.all(Array.from({ length: Math.min(PLACES_AT_ONCE, places.length) }, work))
+    if (this.#busy.size === 0) this.#goOn(onError)
+  }
+
+  /** Without what waits for the end of quiet hours: it would take the turn of others, again and again. */
+  async #notWaiting(due: readonly DeliveryRecord[], at: number): Promise<DeliveryRecord[]> {
+    const { store } = this.#options
+    const sites = new Map<string, { site: SiteRecord; settings: AlertSettingsRecord } | undefined>()
+    const free: DeliveryRecord[] = []
+    for (const delivery of due) {
+      if (!sites.has(delivery.site)) {
+        const site = await store.site(delivery.site)
+        const settings = site && (await store.alerts.settings(site.id))
+        sites.set(delivery.site, site && settings && { site, settings })
+      }
+      const found = sites.get(delivery.site)
+      if (found !== undefined && !mustWait(delivery, found.site, found.settings, at)) free.push(delivery)
+    }
+    return free
+  }
+
+  /** Looks again where something was left because its place was busy. */
+  #goOn(onError: (error: unknown) => void): void {
+    if (!this.#left) return
+    this.#left = false
+    this.run(onError)
   }
 
   /** One place, one after the other; the first failure ends it for now. */
   async #deliverTo(deliveries: readonly DeliveryRecord[]): Promise<void> {
     for (const delivery of deliveries) {
-      if (this.#stopped || this.#inHand.has(delivery.num)) return
-      this.#inHand.add(delivery.num)
-      try {
-        if (!(await this.#attempt(delivery))) return
-      } finally {
-        this.#inHand.delete(delivery.num)
-      }
+      if (this.#stopped || !(await this.#attempt(delivery))) return
     }
   }
 
@@ -126,7 +147,7 @@ export class Outbox {
   }
 }
 
-function byPlace(deliveries: readonly DeliveryRecord[]): DeliveryRecord[][] {
+function byPlace(deliveries: readonly DeliveryRecord[]): ReadonlyMap<string, readonly DeliveryRecord[]> {
   const places = new Map<string, DeliveryRecord[]>()
   for (const delivery of deliveries) {
     const place = `${delivery.way} ${delivery.target}`
@@ -134,7 +155,7 @@ function byPlace(deliveries: readonly DeliveryRecord[]): DeliveryRecord[][] {
     if (others === undefined) places.set(place, [delivery])
     else others.push(delivery)
   }
-  return [...places.values()]
+  return places
 }
 
 /** During the quiet hours of the site everything waits but what may break through. */

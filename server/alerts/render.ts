@@ -11,8 +11,6 @@ export interface Rendered {
   readonly json: string
 }
 
-const WIDTH = 76
-
 /** Writes a message in plain text, times by the clock of the site. */
 export function render(
   { message, kind, createdAt }: Pick<DeliveryRecord, 'message' | 'kind' | 'createdAt'>,
@@ -23,12 +21,7 @@ export function render(
   const said = matters.map(({ text, closedAt }) =>
     closedAt === null || kind === 'test' ? text : `${text} It was over at ${localTime(closedAt, zone)}.`,
   )
-  const lines = [
-    sheet.name,
-    '',
-    ...said.flatMap((text) => [...wrapped(text), '']),
-    `Noticed ${localTime(createdAt, zone)}.`,
-  ]
+  const lines = [sheet.name, '', ...said.flatMap((text) => [text, '']), `Noticed ${localTime(createdAt, zone)}.`]
   const text = `${lines.join('\n')}\n`
   const json = {
     message,
@@ -46,16 +39,4 @@ export function render(
     })),
   }
   return { subject: `${sheet.name}: ${headline(kind, matters.length)}`, text, json: JSON.stringify(json) }
-}
-
-function wrapped(text: string): string[] {
-  const lines: string[] = []
-  let line = ''
-  for (const word of text.split(/\s+/)) {
-    if (line !== '' && line.length + 1 + word.length > WIDTH) {
-      lines.push(line)
-      line = word
-    } else line = line === '' ? word : `${line} ${word}`
-  }
-  return [...lines, line]
 }

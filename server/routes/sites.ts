@@ -40,9 +40,10 @@ export function sitesRoutes({ store, live, now }: Rooms): FastifyPluginAsyncZod 
       },
       async (request) => {
         const { key } = callerOf(request)
-        if (key.site !== null) return { items: [siteSummary(await siteOf(store, key.site))], next: null }
-        const { items, next } = await store.sites(request.query)
-        return { items: items.map(siteSummary), next }
+        const { items, next } =
+          key.site === null ? await store.sites(request.query) : { items: [await siteOf(store, key.site)], next: null }
+        const open = await store.alerts.openCounts(items.map(({ id }) => id))
+        return { items: items.map((site) => siteSummary(site, open.get(site.id) ?? 0)), next }
       },
     )
 
@@ -104,7 +105,7 @@ function siteOut({ id, sheet, createdAt, updatedAt }: SiteRecord): SiteOut {
   return { ...sheet, id, createdAt: writeInstant(createdAt), updatedAt: writeInstant(updatedAt) }
 }
 
-function siteSummary({ id, sheet, updatedAt, lastReadingAt }: SiteRecord): SiteSummary {
+function siteSummary({ id, sheet, updatedAt, lastReadingAt }: SiteRecord, openMatters: number): SiteSummary {
   return {
     id,
     name: sheet.name,
@@ -112,6 +113,7 @@ function siteSummary({ id, sheet, updatedAt, lastReadingAt }: SiteRecord): SiteS
     rcds: sheet.rcds.length,
     channels: sheet.channels.length,
     lastReadingAt: lastReadingAt === null ? null : writeInstant(lastReadingAt),
+    openMatters,
     updatedAt: writeInstant(updatedAt),
   }
 }

@@ -4,7 +4,7 @@ import { join } from 'node:path'
 import type { FastifyInstance, InjectOptions, LightMyRequestResponse } from 'fastify'
 import type { SiteKeyRole, SiteSheetIn } from '../../core/contract/index.ts'
 import { type Analysis, openAnalysis } from '../../server/analysis/analysis.ts'
-import { createApp } from '../../server/app.ts'
+import { type AppOptions, createApp } from '../../server/app.ts'
 import { ensureOwnerKey } from '../../server/plugins/owner-key.ts'
 import type { Store } from '../../server/store/port.ts'
 import { openStore } from '../../server/store/sqlite/index.ts'
@@ -74,8 +74,13 @@ export interface CallOptions {
 }
 
 /** @param wrap stands between the app and its store, to let single calls fail
- * @param page folder of a built page; none when left out */
-export async function startHarness(wrap: (store: Store) => Store = (store) => store, page?: string): Promise<Harness> {
+ * @param page folder of a built page; none when left out
+ * @param more what else the app is made with */
+export async function startHarness(
+  wrap: (store: Store) => Store = (store) => store,
+  page?: string,
+  more: Partial<AppOptions> = {},
+): Promise<Harness> {
   const folder = mkdtempSync(join(tmpdir(), 'leaktide-server-'))
   const file = join(folder, 'leaktide.db')
   const store = await openStore(file)
@@ -83,7 +88,7 @@ export async function startHarness(wrap: (store: Store) => Store = (store) => st
   const now = (): number => clock.now
   await ensureOwnerKey(store, OWNER_KEY, clock.now)
   const analysis = openAnalysis({ store, file, now })
-  const app = await createApp({ store: wrap(store), analysis, now, page: page ?? join(folder, 'no-page') })
+  const app = await createApp({ store: wrap(store), analysis, now, page: page ?? join(folder, 'no-page'), ...more })
 
   const call: Harness['call'] = (method, path, body, { key = OWNER_KEY, headers = {}, cookies = {} } = {}) => {
     const raw = typeof body === 'string' || Buffer.isBuffer(body)

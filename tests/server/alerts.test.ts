@@ -1,0 +1,480 @@
+import { afterEach, beforeEach, describe, expect, it } from 'vitest'
+import { signature } from '../../server/alerts/webhook.ts'
+import { NOW_MS, type Receiver, type Rig, SECRET, startReceiver, startRig } from './alerts-rig.ts'
+
+const MINUTE = 60_000
+const HOUR = 60 * MINUTE
+const T0 = NOW_MS
+
+let rig: Rig
+let receiver: Receiver
+let site: string
+
+beforeEach(async () => {
+  rig = await startRig()
+  receiver = await startReceiver()
+  site = await rig.h.makeSite()
+})
+afterEach(async () => {
+  expect(rig.warnings).toEqual([])
+  await rig.close()
+  await receiver.close()
+})
+
+async function set(more: object = {}): Promise<void> {
+  // Findings are asked for only where a test is about them.
+  const about = { level: false, remedy: false }
+  const body = { webhook: { url: receiver.url, secret: SECRET }, about, ...more }
+  expect((await rig.h.call('PUT', `/sites/${site}/alerts`, body)).statusCode).toBe(200)
+}
+async function post(channels: readonly string[] = ['tails-a'], v = 10, at = rig.h.clock.now): Promise<void> {
+  const blocks = channels.map((channel) => ({ channel, t: [at], v: [v] }))
+  expect((await rig.h.call('POST', `/sites/${site}/readings`, { blocks })).statusCode).toBe(200)
+}
+/** Posts once a minute for so many minutes, looking in between. */
+async function live(minutes: number, channels?: readonly string[], v?: number): Promise<void> {
+  for (let i = 0; i < minutes; i++) {
+    await post(channels, v)
+    rig.pass(MINUTE)
+    await rig.look()
+  }
+}
+type Told = {
+  kind: string
+  message: string
+  text: string
+  matters: { id: string; text: string; closedAt: string | null }[]
+}
+const told = (): Told[] => receiver.calls.map(({ body }) => JSON.parse(body))
+type MatterBody = {
+  kind: string
+  closedAt: string | null
+  text: string
+  deliveries: { state: string; attempts: number }[]
+}
+const matters = async (query = ''): Promise<MatterBody[]> =>
+  (await rig.h.call('GET', `/sites/${site}/alerts/matters${query}`)).json().items
+const deliveries = async (): Promise<
+  { state: string; attempts: number; error: string | null; nextAt: string | null }[]
+> => (await rig.h.call('GET', `/sites/${site}/alerts/deliveries`)).json().items
+
+describe('a logger that stops', () => {
+  it('is noticed within three of its intervals, told once, and over when it is back', async () => {
+    await set()
+    await live(5)
+    expect(await matters()).toEqual([])
+    // The last post is a minute old here.
+    rig.pass(2 * MINUTE - 1)
+    await rig.look()
+    expect(told()).toMatchObject([{ kind: 'silence', text: expect.stringContaining('channel tails-a') }])
+    expect(told()[0]!.text).toContain('every 60 s')
+    for (let i = 0; i < 5; i++) {
+      rig.pass(HOUR)
+      await rig.look()
+    }
+    expect(told()).toHaveLength(1)
+    expect(await matters('?open=true')).toMatchObject([
+      { kind: 'silence', closedAt: null, deliveries: [{ state: 'sent' }] },
+    ])
+    await post()
+    await rig.look()
+    expect(await matters('?open=true')).toEqual([])
+    // The next silence is a matter of its own.
+    await live(5)
+    rig.pass(HOUR)
+    await rig.look()
+    expect(told()).toHaveLength(2)
+  })
+
+  it('with all of its channels is one message', async () => {
+    await set()
+    await live(4, ['tails-a', 'leak-7', 'amps-7'])
+    rig.pass(10 * MINUTE)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+    expect(told()[0]!.matters).toHaveLength(3)
+  })
+
+  it('is not thought silent between the batches it posts every ten minutes', async () => {
+    await set()
+    for (let batch = 0; batch < 6; batch++) {
+      const t = Array.from({ length: 600 }, (_, i) => rig.h.clock.now - (600 - i) * 1_000)
+      await rig.h.call('POST', `/sites/${site}/readings`, { blocks: [{ channel: 'tails-a', t, v: t.map(() => 9) }] })
+      for (let minute = 0; minute < 10; minute++) {
+        rig.pass(MINUTE)
+        await rig.look()
+      }
+    }
+    expect(told()).toEqual([])
+    rig.pass(16 * MINUTE)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+  })
+
+  it('is alive while it posts old readings, or the same ones again, or with a clock that is hours off', async () => {
+    await set()
+    for (let i = 0; i < 20; i++) {
+      await post(['tails-a'], 10, T0 - 9 * HOUR + (i % 3))
+      rig.pass(MINUTE)
+      await rig.look()
+    }
+    expect(told()).toEqual([])
+  })
+
+  it('that posts only when something changes is not waited for, unless the settings say how often it posts', async () => {
+    await set()
+    for (const minutes of [1, 60, 2, 300, 1, 5, 90, 1, 1, 240]) {
+      await post(['mixer-runs'], 1)
+      rig.pass(minutes * MINUTE)
+    }
+    await post(['mixer-runs'], 0)
+    rig.pass(48 * HOUR)
+    await rig.look()
+    expect(told()).toEqual([])
+    await set({ silence: { everySeconds: { 'mixer-runs': 600 } } })
+    await rig.look()
+    expect(told()).toMatchObject([{ kind: 'silence' }])
+  })
+
+  it('says by itself how often it posts ("ut" of SenML)', async () => {
+    await set()
+    await rig.h.call('POST', `/sites/${site}/readings`, [{ n: 'tails-a', v: 10, ut: 120 }], {
+      headers: { 'content-type': 'application/senml+json' },
+    })
+    rig.pass(4 * MINUTE)
+    await rig.look()
+    expect(told()).toEqual([])
+    rig.pass(2 * MINUTE)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+  })
+
+  it('is not missed or doubled by a clock that is set, forward or back', async () => {
+    await set()
+    await live(5)
+    for (const ms of [T0 + 30 * 24 * HOUR, T0 - 24 * HOUR, T0]) {
+      rig.setClock(ms)
+      await rig.look()
+      expect(told()).toEqual([])
+    }
+    rig.setClock(T0 - 48 * HOUR)
+    rig.pass(3 * MINUTE)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+    rig.setClock(T0 + HOUR)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+  })
+
+  it('stays one matter over a restart, and is noticed after one', async () => {
+    await set()
+    await live(6, ['tails-a'])
+    await live(6, ['tails-a', 'rh'])
+    rig.pass(5 * MINUTE)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+    await rig.restart()
+    await rig.look()
+    rig.pass(10 * MINUTE)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+    await post(['tails-a'])
+    await rig.look()
+    expect(await matters('?open=true')).toMatchObject([{ text: expect.stringContaining('channel rh') }])
+    await rig.restart()
+    rig.pass(2 * MINUTE)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+    rig.pass(MINUTE)
+    await rig.look()
+    expect(told()).toHaveLength(2)
+    expect(told()[1]!.text).toContain('since the server started')
+  })
+
+  it('is no longer waited for once its channel left the sheet', async () => {
+    await set()
+    await live(4)
+    rig.pass(HOUR)
+    await rig.look()
+    expect(await matters('?open=true')).toHaveLength(1)
+    await rig.h.call('PATCH', `/sites/${site}`, { channels: [] })
+    await rig.look()
+    expect(await matters('?open=true')).toEqual([])
+  })
+})
+
+describe('a trip', () => {
+  const trip = (body: object): Promise<unknown> => rig.h.call('POST', `/sites/${site}/trips`, { rcd: 'A', ...body })
+
+  it('is told at once, once, though two people write it down', async () => {
+    await set()
+    await trip({ at: T0 - MINUTE, note: 'dark\nagain' })
+    await rig.alerts().settled()
+    await new Promise((done) => setImmediate(done))
+    await rig.look()
+    expect(told()).toMatchObject([{ kind: 'trip', text: expect.stringContaining('RCD A (Bakehouse) tripped') }])
+    expect(told()[0]!.text).toContain('Note: dark again')
+    await trip({ at: T0 - MINUTE, note: 'dark\nagain' })
+    await trip({ after: T0 - HOUR, before: T0, note: 'found it off' })
+    await rig.look()
+    expect(told()).toHaveLength(1)
+    await trip({ rcd: 'B', at: T0 - MINUTE })
+    await trip({ at: T0 - 3 * HOUR, restoredAt: T0 - 2 * HOUR })
+    await rig.look()
+    expect(told().flatMap((message) => message.matters)).toHaveLength(3)
+  })
+
+  it('of long ago, or from before the alerts were set up, is history', async () => {
+    await trip({ at: T0 - HOUR })
+    rig.pass(MINUTE)
+    await set()
+    await trip({ at: T0 - 72 * HOUR })
+    await rig.look()
+    expect(told()).toEqual([])
+  })
+
+  it('is over when the supply is back, or after a day', async () => {
+    await set()
+    await trip({ at: T0 })
+    await trip({ rcd: 'B', at: T0 })
+    await rig.look()
+    expect(await matters('?open=true')).toHaveLength(2)
+    const { items } = (await rig.h.call('GET', `/sites/${site}/trips`)).json()
+    await rig.h.call('PATCH', `/sites/${site}/trips/${items[0].id}`, { restoredAt: T0 + HOUR })
+    rig.pass(2 * HOUR)
+    await rig.look()
+    expect(await matters('?open=true')).toHaveLength(1)
+    rig.pass(25 * HOUR)
+    await rig.look()
+    expect(await matters('?open=true')).toEqual([])
+    expect(told().flatMap((message) => message.matters)).toHaveLength(2)
+  })
+
+  it('is told although the clock was set back since the settings were made', async () => {
+    await set()
+    rig.setClock(T0 - 24 * HOUR)
+    await trip({ at: T0 - 24 * HOUR - MINUTE })
+    await rig.look()
+    expect(told()).toHaveLength(1)
+  })
+})
+
+describe('a level near the trip current', () => {
+  it('is told once until it has clearly fallen', async () => {
+    await set({ about: { silence: false } })
+    await live(10, ['tails-a'], 12)
+    expect(told()).toEqual([])
+    // The ramp test says 23.5 mA; four fifths are 18.8.
+    await live(6, ['tails-a'], 19.5)
+    expect(told()).toMatchObject([{ kind: 'level', text: expect.stringContaining('19.5 mA') }])
+    expect(told()[0]!.text).toContain('23.5 mA (by ramp test)')
+    await live(6, ['tails-a'], 18)
+    await live(6, ['tails-a'], 20)
+    expect(told()).toHaveLength(1)
+    await live(6, ['tails-a'], 14)
+    expect(await matters('?open=true')).toEqual([])
+    await live(6, ['tails-a'], 20)
+    expect(told()).toHaveLength(2)
+  })
+
+  it('is not told for one kick among many readings', async () => {
+    await set({ about: { silence: false } })
+    await live(8, ['tails-a'], 12)
+    await live(1, ['tails-a'], 22)
+    await live(3, ['tails-a'], 12)
+    expect(told()).toEqual([])
+  })
+})
+
+describe('a remedy that is proven', () => {
+  it('is told once', async () => {
+    const day = 24 * HOUR
+    const trips = Array.from({ length: 14 }, (_, i) => ({
+      rcd: 'A',
+      at: T0 - 60 * day + i * 2 * day,
+      restoredAt: T0 - 60 * day + i * 2 * day + MINUTE,
+    }))
+    await rig.h.call('POST', `/sites/${site}/trips`, trips)
+    const t = Array.from({ length: 60 * 24 }, (_, i) => T0 - 60 * day + i * HOUR)
+    await rig.h.call('POST', `/sites/${site}/readings`, {
+      blocks: [{ channel: 'tails-a', t, v: t.map((_, i) => 8 + (i % 3)) }],
+    })
+    await rig.h.call('POST', `/sites/${site}/remedies`, { at: T0 - 30 * day, of: 'load:mixer', done: 'unplugged' })
+    await set({ about: { silence: false } })
+    await rig.look()
+    await rig.look()
+    expect(told()).toMatchObject([{ kind: 'remedy', text: expect.stringContaining('the remedy is proven') }])
+    rig.pass(HOUR)
+    await post()
+    await rig.look()
+    await rig.look()
+    expect(told()).toHaveLength(1)
+  }, 60_000)
+})
+
+describe('quiet hours', () => {
+  // 12:00 UTC is 14:00 in Vienna in September.
+  const quiet = { from: '13:00', to: '15:00' }
+
+  it("by the site's own clock hold messages back, and let them go when they end", async () => {
+    await set({ quiet })
+    await rig.h.call('POST', `/sites/${site}/trips`, { rcd: 'A', at: T0 - MINUTE })
+    await rig.look()
+    expect(told()).toEqual([])
+    expect(await deliveries()).toMatchObject([{ state: 'waiting', attempts: 0 }])
+    rig.pass(HOUR - 1)
+    await rig.look()
+    expect(told()).toEqual([])
+    rig.pass(1)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+  })
+
+  it('that run past midnight do so', async () => {
+    await set({ quiet: { from: '14:30', to: '06:00' } })
+    rig.pass(HOUR)
+    await rig.h.call('POST', `/sites/${site}/trips`, { rcd: 'A', at: T0 })
+    await rig.look()
+    rig.pass(14 * HOUR)
+    await rig.look()
+    expect(told()).toEqual([])
+    rig.pass(2 * HOUR)
+    await rig.look()
+    expect(told()).toHaveLength(1)
+  })
+
+  it('let a trip through where that is set, and nothing else', async () => {
+    await set({ quiet: { ...quiet, tripsBreakThrough: true } })
+    await live(4)
+    rig.pass(10 * MINUTE)
+    await rig.h.call('POST', `/sites/${site}/trips`, { rcd: 'A', at: T0 })
+    await rig.look()
+    expect(told()).toMatchObject([{ kind: 'trip' }])
+  })
+
+  it('a message that waited says when its matter was over', async () => {
+    await set({ quiet })
+    await live(4)
+    rig.pass(10 * MINUTE)
+    await rig.look()
+    await post()
+    await rig.look()
+    rig.pass(HOUR)
+    await rig.look()
+    expect(told()[0]!.text).toMatch(/It was over at 2026-09-22 14:14 \(Europe\/Vienna\)/)
+  })
+})
+
+describe('the outbox', () => {
+  const trip = (at = T0): Promise<unknown> => rig.h.call('POST', `/sites/${site}/trips`, { rcd: 'A', at })
+
+  it('signs what it sends by time and body', async () => {
+    await set()
+    await trip()
+    await rig.look()
+    const { headers, body } = receiver.calls[0]!
+    const timestamp = String(headers['leaktide-timestamp'])
+    expect(Number(timestamp)).toBe(Math.floor(rig.h.clock.now / 1_000))
+    expect(headers['leaktide-signature']).toBe(`v1=${signature(SECRET, timestamp, body)}`)
+    expect(headers['leaktide-message']).toBe(told()[0]!.message)
+    expect(JSON.parse(body)).toMatchObject({ site: { id: site, name: 'Village bakery' }, kind: 'trip' })
+  })
+
+  it('tries again after waits that double, over restarts, until it is taken; then never again', async () => {
+    await set()
+    receiver.answer = (response) => response.writeHead(503).end('later')
+    await trip()
+    await rig.look()
+    const waits: number[] = []
+    for (let i = 0; i < 5; i++) {
+      const [one] = await deliveries()
+      expect(one).toMatchObject({ state: 'waiting', attempts: i + 1, error: 'answered 503' })
+      const wait = Date.parse(one!.nextAt!) - rig.h.clock.now
+      waits.push(wait / 1_000)
+      rig.pass(wait - 1)
+      await rig.look()
+      expect(receiver.calls).toHaveLength(i + 1)
+      if (i === 2) await rig.restart()
+      rig.pass(1)
+      await rig.look()
+      expect(receiver.calls).toHaveLength(i + 2)
+    }
+    expect(waits).toEqual([30, 60, 120, 240, 480])
+    receiver.answer = (response) => response.writeHead(200).end()
+    rig.pass(24 * HOUR)
+    await rig.restart()
+    await rig.look()
+    await rig.look()
+    expect(await deliveries()).toMatchObject([{ state: 'sent', error: null, nextAt: null }])
+    rig.pass(24 * HOUR)
+    await rig.look()
+    expect(receiver.calls).toHaveLength(7)
+    expect(new Set(receiver.calls.map(({ headers }) => headers['leaktide-message'])).size).toBe(1)
+  })
+
+  it('does not wait for ever for a clock that was set back', async () => {
+    await set()
+    receiver.answer = (response) => response.writeHead(500).end()
+    rig.setClock(T0 + 365 * 24 * HOUR)
+    await trip(T0 + 365 * 24 * HOUR)
+    await rig.look()
+    expect(receiver.calls).toHaveLength(1)
+    rig.setClock(T0)
+    receiver.answer = (response) => response.writeHead(200).end()
+    await rig.look()
+    expect(await deliveries()).toMatchObject([{ state: 'sent', attempts: 2 }])
+  })
+
+  it('gives up on a place that was taken out of the settings', async () => {
+    await set()
+    receiver.answer = (response) => response.writeHead(500).end()
+    await trip()
+    await rig.look()
+    await rig.h.call('PUT', `/sites/${site}/alerts`, {})
+    rig.pass(HOUR)
+    await rig.look()
+    expect(await deliveries()).toMatchObject([{ state: 'given-up' }])
+    expect(receiver.calls).toHaveLength(1)
+  })
+
+  it('gives up at last on a place that never takes it, and says so', async () => {
+    await set()
+    receiver.answer = (response) => response.writeHead(500).end()
+    await trip()
+    for (let i = 0; i < 45; i++) {
+      await rig.look()
+      rig.pass(6 * HOUR)
+    }
+    expect(await deliveries()).toMatchObject([{ state: 'given-up', attempts: 38, nextAt: null }])
+    expect(receiver.calls).toHaveLength(38)
+  })
+
+  it('is not held up by a place that does not answer', async () => {
+    const second = await rig.h.makeSite()
+    const other = await startReceiver()
+    await set()
+    await rig.h.call('PUT', `/sites/${second}/alerts`, { webhook: { url: other.url, secret: SECRET } })
+    let letGo = (): void => undefined
+    receiver.answer = (response) => {
+      letGo = () => response.writeHead(200).end()
+    }
+    await trip()
+    await rig.h.call('POST', `/sites/${second}/trips`, { rcd: 'A', at: T0 })
+    await rig.alerts().look()
+    while (other.calls.length + receiver.calls.length < 2) await new Promise((done) => setTimeout(done, 5))
+    letGo()
+    await rig.alerts().settled()
+    expect(receiver.calls).toHaveLength(1)
+    await other.close()
+  })
+
+  it('tells the kinds that are wanted and no others; all are noticed', async () => {
+    await set({ about: { silence: false, trip: false, level: false, remedy: false } })
+    await live(4)
+    rig.pass(HOUR)
+    await trip()
+    await rig.look()
+    expect(told()).toEqual([])
+    expect((await matters()).map(({ kind }) => kind).sort()).toEqual(['silence', 'trip'])
+  })
+})
