@@ -107,9 +107,11 @@ export async function openAlerts(options: AlertsOptions): Promise<Alerts> {
     const watched = arrivals.watched(site.id)
     const noticed: Noticed[] = [noticeSilence(site.sheet, watched, settings.silence, open)]
     if (kept === undefined) return noticed
-    noticed.push(noticeTrips(site.sheet, await tripsOf(site.id), kept.since, known, now()))
-    if (waysOf(settings).length === 0 || !(settings.about.level || settings.about.remedy)) return noticed
-    const devices = site.sheet.rcds.flatMap(({ ref }) => facts.of(site, ref) ?? [])
+    const { about } = settings
+    const asks = waysOf(settings).length > 0 && (about.trip || about.level || about.remedy)
+    const devices = asks ? site.sheet.rcds.flatMap(({ ref }) => facts.of(site, ref) ?? []) : []
+    const inLog = devices.flatMap(({ rcd, unwritten }) => unwritten.map((span) => ({ rcd, ...span })))
+    noticed.push(noticeTrips(site.sheet, await tripsOf(site.id), kept.since, known, now(), inLog))
     const live = new Set(
       watched.filter((one) => one.lastAt !== null && one.silentMs < FRESH_LEVEL_MS).map((one) => one.channel),
     )

@@ -9,6 +9,8 @@ export interface DeviceFacts {
   readonly tripMa: number
   readonly basis: string
   readonly proof: Finding.Proof
+  /** Trips that the log shows and nobody wrote down, epoch ms: when it opened, or within which time. */
+  readonly unwritten: readonly { readonly from: number; readonly to: number }[]
 }
 
 /** Answers what the findings of a device are. */
@@ -23,7 +25,7 @@ interface Kept {
 /** Findings are asked for no more often than this for one device: with every post they would be new. */
 const FRESH_MS = 3_600_000
 
-const Needed = Findings.pick({ headroom: true, proof: true })
+const Needed = Findings.pick({ headroom: true, proof: true, trips: true })
 
 /** The facts of devices, asked for in the background, one device after the other, so that nothing waits for them. */
 export class FactsOfDevices {
@@ -80,12 +82,23 @@ export class FactsOfDevices {
   async #facts(site: SiteRecord, rcd: string): Promise<DeviceFacts | undefined> {
     try {
       const { body } = await this.#ask(site, rcd)
-      const { headroom, proof } = Needed.parse(JSON.parse(body))
-      return { rcd, tripMa: headroom.tripMa.value, basis: headroom.tripMa.basis, proof }
+      const { headroom, proof, trips } = Needed.parse(JSON.parse(body))
+      const unwritten = trips.filter(({ id }) => id === null).flatMap((trip) => spanOf(trip) ?? [])
+      return { rcd, tripMa: headroom.tripMa.value, basis: headroom.tripMa.basis, proof, unwritten }
     } catch (error) {
       const passing = error instanceof TooBusy || error instanceof TooMuch || error instanceof StoreError
       if (!passing) this.#warn(error)
       return undefined
     }
   }
+}
+
+function spanOf({
+  at,
+  after,
+  before,
+}: Finding.TripFinding): { readonly from: number; readonly to: number } | undefined {
+  const from = at ?? after
+  const to = at ?? before
+  return from === null || to === null ? undefined : { from: Date.parse(from), to: Date.parse(to) }
 }

@@ -1,5 +1,5 @@
 import type { SiteSheet, Trip } from '../../core/contract/index.ts'
-import type { Noticed, OpenMatter } from './notice.ts'
+import type { Notice, Noticed, OpenMatter } from './notice.ts'
 import { localTime, rcdName } from './words.ts'
 
 const HOUR = 3_600_000
@@ -18,6 +18,13 @@ export interface TripNote {
   readonly body: Trip
 }
 
+/** A trip that the log shows and nobody wrote down. */
+export interface TripInLog {
+  readonly rcd: string
+  readonly from: number
+  readonly to: number
+}
+
 interface Outage {
   readonly rcd: string
   readonly from: number
@@ -28,7 +35,7 @@ interface Outage {
 
 /**
  * Trips that came since the alerts were set up. Two notes of one trip, as of the logger and of the person who found it,
- * are one matter.
+ * are one matter; so are a note and what the log shows of the trip.
  * @param matters open ones, and those of the last days
  */
 export function noticeTrips(
@@ -37,10 +44,11 @@ export function noticeTrips(
   since: number,
   matters: readonly OpenMatter[],
   now: number,
+  inLog: readonly TripInLog[] = [],
 ): Noticed {
   const known = matters.flatMap((matter) => (matter.kind === 'trip' ? [outageIn(matter)] : []))
   const told = new Set(matters.map(({ key }) => key))
-  const notices = trips.flatMap(({ id, recordedAt, body }) => {
+  const notices: Notice[] = trips.flatMap(({ id, recordedAt, body }) => {
     const outage = outageOf(body)
     const key = `trip/${id}`
     // A clock that was set back since then must not hide a trip.
@@ -50,6 +58,13 @@ export function noticeTrips(
     known.push(outage)
     return [{ key, kind: 'trip' as const, text: textOf(sheet, body), figures: { trip: id, ...outage } }]
   })
+  for (const { rcd, from, to } of inLog) {
+    const outage = { rcd, from, to, restored: false }
+    if (to < Math.max(since, now - TRIP_TOLD_WITHIN_MS) || known.some((one) => isSame(one, outage))) continue
+    known.push(outage)
+    const text = `${rcdName(sheet, rcd)} opened ${whenOf(from, to, sheet.timeZone)}: the log shows it, nobody wrote it down.`
+    notices.push({ key: `trip/${rcd}/${from}`, kind: 'trip', text, figures: { trip: null, ...outage } })
+  }
   const records = new Map(trips.map(({ id, body }) => [`trip/${id}`, body]))
   const over = matters.filter((matter) => {
     if (matter.kind !== 'trip' || matter.closedAt !== null) return false
@@ -76,11 +91,12 @@ function isSame(a: Outage, b: Outage): boolean {
 
 function textOf(sheet: SiteSheet, { rcd, at, after, before, restoredAt, note }: Trip): string {
   const zone = sheet.timeZone
-  const when =
-    at === undefined
-      ? `between ${localTime(after ?? 0, zone)} and ${localTime(before ?? 0, zone)}`
-      : `at ${localTime(at, zone)}`
+  const when = whenOf(at ?? after ?? 0, at ?? before ?? 0, zone)
   const back = restoredAt === undefined ? '' : ` The supply was back at ${localTime(restoredAt, zone)}.`
   const said = note === undefined || note.trim() === '' ? '' : ` Note: ${note.replace(/\s+/g, ' ').slice(0, 200)}`
   return `${rcdName(sheet, rcd)} tripped ${when}.${back}${said}`
+}
+
+function whenOf(from: number, to: number, zone: string): string {
+  return from === to ? `at ${localTime(from, zone)}` : `between ${localTime(from, zone)} and ${localTime(to, zone)}`
 }

@@ -14,7 +14,7 @@ export function liveRoutes({ store, live }: Rooms): FastifyPluginAsyncZod {
         schema: {
           summary: 'What arrives, as it arrives',
           description:
-            'Events: readings {channel, from, to, stored}, records {kind}, sheet {}. A comment keeps the line open every quarter minute.',
+            'Events: readings {channel, from, to, stored}, records {kind}, sheet {}, matters {} (something was noticed or is over). A comment keeps the line open every quarter minute.',
           tags: ['readings'],
           params: SiteParams,
           response: {

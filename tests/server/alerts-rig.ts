@@ -4,6 +4,7 @@ import type { AddressInfo } from 'node:net'
 import { SMTPServer } from 'smtp-server'
 import { type Alerts, type AlertsDoor, openAlerts } from '../../server/alerts/alerts.ts'
 import type { AlertServerSettings, SmtpSettings } from '../../server/alerts/settings.ts'
+import { TooBusy } from '../../server/analysis/limits.ts'
 import { LiveHub } from '../../server/plugins/live.ts'
 import { type Harness, NOW_MS, startHarness } from './harness.ts'
 
@@ -26,7 +27,8 @@ export interface Rig {
   close(): Promise<void>
 }
 
-export async function startRig(server: Partial<AlertServerSettings> = {}): Promise<Rig> {
+/** @param findings whether findings are really asked for: they take a second */
+export async function startRig(server: Partial<AlertServerSettings> = {}, findings = false): Promise<Rig> {
   const alertServer = { smtp: undefined, webhookHosts: new Set(['127.0.0.1']), ...server }
   let alerts: Alerts
   const door: AlertsDoor = {
@@ -43,7 +45,8 @@ export async function startRig(server: Partial<AlertServerSettings> = {}): Promi
   const open = (): Promise<Alerts> =>
     openAlerts({
       store: h.store,
-      findings: (site, rcd) => h.analysis.findings(site, rcd, null, null),
+      findings: (site, rcd) =>
+        findings ? h.analysis.findings(site, rcd, null, null) : Promise.reject(new TooBusy('Not in this test.')),
       now: () => h.clock.now,
       elapsed: () => elapsed,
       server: alertServer,
