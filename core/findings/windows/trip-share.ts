@@ -173,7 +173,7 @@ export function layeredWindow(
     weightsBy.push(weights)
   })
   // whoever counts windows by their sets counts this one by itself
-  const when = { inside: (held[0] ?? NO_SPANS).subarray(), known: knownHere }
+  const when = { inside: held[0] ?? NO_SPANS, known: knownHere }
   return { key, words, prior, hoursBy, weightsBy, inside, insideHours, when }
 }
 

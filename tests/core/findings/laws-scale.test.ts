@@ -5,7 +5,7 @@ import { findings } from '../../../core/findings/findings.ts'
 import type { Evidence } from '../../../core/timeline/evidence.ts'
 import { LAW_SEEDS, madeSite } from './laws-site.ts'
 
-const FEW = { numRuns: 4 }
+const FEW = { numRuns: 2 }
 const site = fc.constantFrom(...LAW_SEEDS)
 /** Powers of two, so that nothing is rounded on the way in. */
 const times = fc.constantFrom(2, 4)
