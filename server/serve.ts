@@ -79,6 +79,8 @@ export async function serve(options: ServeOptions): Promise<Serving> {
   })
   await app.listen({ host, port })
   const stopSchedule = startSchedule(store, alerts, (error) => app.log.error(error))
+  // What a server that was killed left in its outbox does not wait for the first tick.
+  alerts.look().catch((error: unknown) => app.log.error(error))
   if (options.mqtt !== undefined) {
     mqtt = openMqtt({
       settings: options.mqtt,
