@@ -54,7 +54,8 @@ export interface AlertsOptions {
   readonly onChange?: (site: string) => void
 }
 
-const KNOWN_MS = 7 * 86_400_000
+/** No trip that was told is looked at longer than this; see notice-trips.ts. */
+const KNOWN_MS = TRIP_TOLD_WITHIN_MS + 2 * AHEAD_MS
 const KEPT_MS = 180 * 86_400_000
 const DAY_MS = 86_400_000
 /** A level older than this is not recent. */

@@ -15,7 +15,9 @@ export function waysOf({
 
 /**
  * What changes by what was noticed: matters that open and close, and one message for all of a kind that open together,
- * where the site wants to be told. A matter that is open already is no news. Undefined when nothing changes.
+ * where the site wants to be told. A matter that is open already is no news. After many messages of a kind within an hour
+ * what is new waits, and makes one message together: whoever may write trips down must not flood a mailbox.
+ * Undefined when nothing changes.
  */
 export function planChange(
   known: readonly MatterRecord[],
@@ -30,9 +32,10 @@ export function planChange(
     const id = openByKey.get(key)
     return id === undefined ? [] : [{ id, at: now }]
   })
+  const tooMany = kindsToldOften(known, now)
   const open: NewMatter[] = noticed
     .flatMap(({ notices }) => notices)
-    .filter(({ key }) => !openByKey.has(key))
+    .filter(({ key, kind }) => !openByKey.has(key) && !tooMany.has(kind))
     .map((notice) => ({ ...notice, id: newId(), openedAt: now }))
   if (open.length === 0 && close.length === 0) return undefined
   const to = waysOf(settings)
@@ -47,6 +50,19 @@ export function planChange(
     }),
   )
   return { open, close, messages: to.length === 0 ? [] : messages }
+}
+
+const HOUR_MS = 3_600_000
+const MOST_AN_HOUR = 20
+
+/** Kinds of which so many matters opened within the last hour, those of one moment counted as one. */
+function kindsToldOften(known: readonly MatterRecord[], now: number): ReadonlySet<MatterKind> {
+  const moments = new Map<MatterKind, Set<number>>()
+  for (const { kind, openedAt } of known) {
+    if (openedAt > now || openedAt <= now - HOUR_MS) continue
+    moments.set(kind, (moments.get(kind) ?? new Set()).add(openedAt))
+  }
+  return new Set([...moments].filter(([, times]) => times.size >= MOST_AN_HOUR).map(([kind]) => kind))
 }
 
 function wants({ about }: AlertSettings, kind: MatterKind): boolean {

@@ -89,6 +89,11 @@ export function alertsRoutes({ store, alerts, alertServer, now }: Rooms): Fastif
         if (settings.quiet !== null && settings.quiet.from === settings.quiet.to) {
           throw new Refused('The body does not fit.', [{ path: '/quiet/to', why: 'quiet hours end when they begin' }])
         }
+        if (settings.level.hysteresis >= settings.level.share) {
+          throw new Refused('The body does not fit.', [
+            { path: '/level/hysteresis', why: 'must be less than the share, or a level would never be over' },
+          ])
+        }
         const channels = new Set(sheet.channels.map(({ ref }) => ref))
         const unknown = Object.keys(settings.silence.everySeconds).filter((ref) => !channels.has(ref))
         if (unknown.length > 0) {

@@ -180,6 +180,25 @@ describe('the outbox', () => {
     await other.close()
   })
 
+  it('is not flooded by whoever writes trips down; what waits is told together', async () => {
+    await set()
+    const trips = 60
+    for (let i = 0; i < trips; i++) {
+      const at = T0 - 24 * HOUR + i * 10_000
+      await watched.trip({ at, restoredAt: at + 1_000 })
+      rig.pass(1_000)
+      await rig.look()
+    }
+    expect(told()).toHaveLength(20)
+    rig.pass(HOUR)
+    await rig.look()
+    expect(told()).toHaveLength(21)
+    expect(new Set(told().flatMap((message) => message.matters.map(({ id }) => id))).size).toBe(trips)
+    rig.pass(HOUR)
+    await rig.look()
+    expect(told()).toHaveLength(21)
+  })
+
   it('tells the kinds that are wanted and no others; all are noticed', async () => {
     await set({ about: { silence: false, trip: false, level: false, remedy: false } })
     await live(4)

@@ -68,6 +68,7 @@ describe('the alert settings of a site', () => {
     ['quiet hours that never begin', { quiet: { from: '06:00', to: '06:00' } }, '/quiet/to'],
     ['a channel that is not there', { silence: { everySeconds: { ghost: 60 } } }, '/silence/everySeconds/ghost'],
     ['a share above one', { level: { share: 1.5 } }, '/level/share'],
+    ['a level that is never over', { level: { share: 0.2, hysteresis: 0.2 } }, '/level/hysteresis'],
     ['text', 'x', ''],
   ])('refuse %s', async (_what, body, path) => {
     const answer = await put(body)

@@ -65,7 +65,7 @@ describe('the OpenAPI document', () => {
         what,
       ).toBe(true)
       expect(statuses, what).toEqual(expect.arrayContaining(['429', '500', '503']))
-      if (method === 'POST' || method === 'PATCH') expect(operation.requestBody, what).toBeDefined()
+      if (['POST', 'PATCH', 'PUT'].includes(method)) expect(operation.requestBody, what).toBeDefined()
       for (const answer of Object.values(operation.responses ?? {}) as OpenAPIV3_1.ResponseObject[]) {
         expect(answer.description, what).toBeTruthy()
         expect(answer.description, what).not.toBe('Default Response')
@@ -92,7 +92,7 @@ describe('the OpenAPI document', () => {
 
   it('holds against bodies made from its own schemas, whole or with a part gone wrong', async () => {
     const withBody = operations.filter(
-      ({ method, path }) => (method === 'POST' || method === 'PATCH') && path !== '/session',
+      ({ method, path }) => ['POST', 'PATCH', 'PUT'].includes(method) && path !== '/session',
     )
     for (const one of withBody) {
       for (const [type, media] of Object.entries(bodyOf(one.operation))) {
