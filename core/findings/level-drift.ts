@@ -4,6 +4,7 @@ import { mannKendall, theilSen } from '../statistics/index.ts'
 import { sliceSeries } from '../timeline/series.ts'
 import type { Timeline } from '../timeline/timeline.ts'
 import { medianInPlace, readingsWithin } from './levels.ts'
+import { resemblance } from './resemblance.ts'
 import { rounded } from './words.ts'
 
 const HOUR_MS = 3_600_000
@@ -28,7 +29,12 @@ export function levelDrift(timeline: Timeline): NonNullable<Headroom['drift']> |
   const trend = theilSen(days, v, { confidence: 0.9 })
   if (trend.low === null || trend.high === null) return { maPerDay: 0, low: 0, high: 0, p: 1 }
   const test = mannKendall(v)
-  const wider = Math.sqrt(resemblance(v.map((level, i) => level - trend.slope * days[i]!)))
+  const wider = Math.sqrt(
+    resemblance(
+      v.map((level, i) => level - trend.slope * days[i]!),
+      MOST_LAGS,
+    ),
+  )
   return {
     maPerDay: rounded(trend.slope),
     low: rounded(trend.slope + (trend.low - trend.slope) * wider),
@@ -50,22 +56,4 @@ function hourlyLevels(timeline: Timeline): { t: number[]; v: number[] } {
     v.push(medianInPlace(held.v))
   }
   return { t, v }
-}
-
-/** How many stretches count as one: 1 + 2 Σ (1 − k/n) r_k, up to where the autocorrelation first dies out. */
-function resemblance(residuals: readonly number[]): number {
-  const n = residuals.length
-  const mean = residuals.reduce((sum, r) => sum + r, 0) / n
-  const d = residuals.map((r) => r - mean)
-  const total = d.reduce((sum, r) => sum + r * r, 0)
-  if (total === 0) return 1
-  let factor = 1
-  for (let k = 1; k <= Math.min(MOST_LAGS, n >> 1); k++) {
-    let sum = 0
-    for (let i = k; i < n; i++) sum += d[i]! * d[i - k]!
-    const r = sum / total
-    if (r <= 0) break
-    factor += 2 * (1 - k / n) * r
-  }
-  return factor
 }

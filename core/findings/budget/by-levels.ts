@@ -6,6 +6,7 @@ import type { Series } from '../../timeline/series.ts'
 import { eachSpan } from '../../timeline/spans.ts'
 import type { Timeline } from '../../timeline/timeline.ts'
 import { levelBetween } from '../levels.ts'
+import { resemblance } from '../resemblance.ts'
 
 const HOUR_MS = 3_600_000
 /** Blocks are made longer rather than more than this many. */
@@ -43,7 +44,7 @@ export function figuresByLevels(
   const y = blocks.map((block) => block.level)
   try {
     const plain = leastSquares(design, y)
-    const wider = Math.sqrt(resemblance(plain.residuals))
+    const wider = Math.sqrt(resemblance(plain.residuals, blocks.length))
     const { coefficients } = nnls(design, y)
     usable.forEach((thing, k) => {
       const error = (plain.standardErrors?.[k + 1] ?? Number.NaN) * wider
@@ -91,20 +92,4 @@ function blocksOf(
     }
   }
   return blocks
-}
-
-/** How many blocks count as one: 1 + 2 Σ (1 − k/n) r_k, up to where the autocorrelation first dies out. */
-function resemblance(residuals: ArrayLike<number>): number {
-  const n = residuals.length
-  let total = 0
-  for (let i = 0; i < n; i++) total += residuals[i]! ** 2
-  if (total === 0) return 1
-  let factor = 1
-  for (let k = 1; k <= n >> 1; k++) {
-    let sum = 0
-    for (let i = k; i < n; i++) sum += residuals[i]! * residuals[i - k]!
-    if (sum <= 0) break
-    factor += (2 * (1 - k / n) * sum) / total
-  }
-  return factor
 }
