@@ -168,12 +168,15 @@ function roamOf(
   return MAD_TO_SIGMA * medianInPlace(rest.map((level) => Math.abs(level - middle)))
 }
 
-/** What ran unseen on a circuit as it was switched: its part of what roams, by its share of the loads whose state nobody knows. */
+/**
+ * What ran unseen on a circuit as it was switched: its part of what roams, by its share of the loads whose state nobody knows. Every circuit
+ * counts one more, for what stands on no sheet.
+ */
 function unseenVariance(things: readonly Thing[], thing: number, own: readonly StepRow[], roam: number): number {
   const { kind, circuit } = things[thing]!
   if (kind === 'load') return 0
-  const unknown = things.filter((load) => load.kind === 'load' && load.state.on.length === 0)
-  const here = unknown.filter((load) => load.circuit === circuit).length
+  const unknown = things.filter((other) => other.kind === 'circuit' || other.state.on.length === 0)
+  const here = unknown.filter((other) => other.circuit === circuit).length
   const short = own.filter((row) => !row.long).length
-  return short === 0 || here === 0 ? 0 : (roam * roam * here * short) / unknown.length / own.length ** 2
+  return short === 0 ? 0 : (roam * roam * here * short) / unknown.length / own.length ** 2
 }

@@ -1,4 +1,5 @@
 import { type Series, usualInterval } from '../timeline/series.ts'
+import { clip, type Spans, spansOf, totalMs } from '../timeline/spans.ts'
 import type { Thing, Timeline } from '../timeline/timeline.ts'
 import { groupedLevelBetween, meanBetween } from './levels.ts'
 
@@ -7,6 +8,8 @@ const MINUTE_MS = 60_000
 const BESIDE_MS = 60 * MINUTE_MS
 /** Pieces too short for a level are bridged, as long as no more than this is skipped. */
 const BRIDGE_MS = 10 * MINUTE_MS
+/** Watches and loggers differ by minutes: so much round a switching that a person wrote down belongs to neither side. */
+const NOTED_MS = 15 * MINUTE_MS
 /** Where a circuit with unseen loads is switched, the usual level of so long a time is asked, not what ran just then. */
 const LONG_MS = 24 * 60 * MINUTE_MS
 /** Levels over less than this say nothing of what is usual. */
@@ -42,19 +45,21 @@ interface Piece {
 
 /**
  * Cuts the logged time wherever a circuit or load changes and takes the differences of neighbouring robust levels, a bit
- * away from the edges (methods.md §2). Where a circuit changes, so do those of its loads that ran on it. Linear in changes × readings looked at near each (at most 401).
+ * away from the edges (methods.md §2), farther where the time is a person's. Where a circuit changes, so do those of its loads that ran on it.
+ * Linear in changes × readings looked at near each (at most 401).
  */
 export function stepRows(timeline: Timeline, leakage: Series): StepRows {
   const interval = usualInterval(leakage)
   if (Number.isNaN(interval)) return { steps: [], placebos: [], longPlacebos: [] }
   const edges = edgesOf(timeline)
-  const pieces = piecesOf(timeline, edges, interval)
+  const blanks = notedSpans(timeline.things)
+  const pieces = piecesOf(timeline, edges, blanks, interval)
   const hasUnseen = circuitsWithUnseen(timeline.things)
   const steps: StepRow[] = []
   let e = 0
   let held: { piece: Piece; stretch: number } | null = null
   for (const { piece, stretch } of pieces) {
-    if (held !== null && held.stretch === stretch && piece.from - held.piece.to <= BRIDGE_MS) {
+    if (held !== null && held.stretch === stretch && gapBetween(held.piece.to, piece.from, blanks) <= BRIDGE_MS) {
       while (e < edges.length && edges[e]!.at < held.piece.to) e++
       const changed = new Map<number, number>()
       for (; e < edges.length && edges[e]!.at <= piece.from; e++) {
@@ -94,19 +99,50 @@ function settling(interval: number): number {
   return Math.max(2_000, 2 * interval)
 }
 
+/** Time round switchings that somebody wrote down; where they follow each other closely, a third of the way to the next. */
+function notedSpans(things: readonly Thing[]): Spans {
+  const noted = things
+    .filter((thing) => thing.source === 'switching')
+    .flatMap((thing) => thing.changes.map(({ at }) => at))
+  const times = [...new Set(noted)].sort((a, b) => a - b)
+  return spansOf(
+    times.map((at, i): [number, number] => [
+      at - Math.min(NOTED_MS, (at - (times[i - 1] ?? Number.NEGATIVE_INFINITY)) / 3),
+      at + Math.min(NOTED_MS, ((times[i + 1] ?? Number.POSITIVE_INFINITY) - at) / 3),
+    ]),
+  )
+}
+
+/** Time between two pieces, without what was left out on purpose, ms. */
+function gapBetween(from: number, to: number, blanks: Spans): number {
+  return to > from ? to - from - totalMs(clip(blanks, from, to)) : 0
+}
+
 /** Pieces long enough for a level, with the logged stretch each lies in. */
-function piecesOf(timeline: Timeline, edges: readonly Edge[], interval: number): { piece: Piece; stretch: number }[] {
+function piecesOf(
+  timeline: Timeline,
+  edges: readonly Edge[],
+  blanks: Spans,
+  interval: number,
+): { piece: Piece; stretch: number }[] {
   const { logged } = timeline
   const least = settling(interval) + 3 * interval
   const list: { piece: Piece; stretch: number }[] = []
   let e = 0
+  let k = 0
   for (let s = 0; s < logged.length; s += 2) {
     let from = logged[s]!
     const end = logged[s + 1]!
     while (e < edges.length && edges[e]!.at < from) e++
     for (;;) {
       const to = e < edges.length && edges[e]!.at < end ? edges[e]!.at : end
-      if (to - from >= least) list.push({ piece: { from, to }, stretch: s })
+      while (k < blanks.length && blanks[k + 1]! <= from) k += 2
+      let begin = from
+      for (let n = k; n < blanks.length && blanks[n]! < to; n += 2) {
+        if (blanks[n]! - begin >= least) list.push({ piece: { from: begin, to: blanks[n]! }, stretch: s })
+        begin = blanks[n + 1]!
+      }
+      if (to - begin >= least) list.push({ piece: { from: begin, to }, stretch: s })
       if (to === end) break
       from = to
       e++

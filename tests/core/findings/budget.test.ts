@@ -158,6 +158,34 @@ describe('budget', () => {
     expect(budget({ ...timeline, things: [idle, ...timeline.things] }).slice(1)).toEqual(budget(timeline))
   })
 
+  it('lets a watch be minutes off the clock of the logger', () => {
+    const to = START + 24 * HOUR
+    const off = [START + 8 * HOUR, START + 14 * HOUR] as const
+    // noted six minutes late; a kettle runs shortly before and cuts the level into short pieces
+    const circuit = {
+      ...loadOn(
+        '1',
+        [
+          [START, off[0] + 6 * MINUTE],
+          [off[1] + 6 * MINUTE, to],
+        ],
+        START,
+        to,
+      ),
+      of: 'circuit:1',
+      kind: 'circuit' as const,
+      source: 'switching' as const,
+    }
+    const boils = [1, 3, 5, 7.98, 8.04, 10, 12, 13.98, 14.04, 17, 20].map(
+      (h) => [START + h * HOUR, START + h * HOUR + 3 * MINUTE] as const,
+    )
+    const kettle = { ...loadOn('kettle', boils, START, to), circuit: '2' }
+    const bare = timelineOf({ days: 1, things: [circuit, kettle] })
+    const log = logOf(bare, (t) => 6 + (t >= off[0] && t < off[1] ? 0 : 3) + (whileOn(bare, 'load:kettle', t) ? 1 : 0))
+    const [line] = budget(log)
+    expect(line!.ma).toBeCloseTo(3, 6)
+  })
+
   it('reads a clamp survey: everything on, then one after another off', () => {
     const timeline = timelineOf({
       days: 1,
