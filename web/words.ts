@@ -53,6 +53,7 @@ export const words = {
     last: (when: string) => `last reading ${when}`,
     never: 'no reading yet',
     none: 'No site yet. A new site is made through the API for now: post its sheet to /api/sites, then let a logger post readings. The readable description is at /api.',
+    open: (n: number) => (n === 1 ? 'one thing wants a look' : `${n} things want a look`),
     noMatch: (text: string) => `No site has “${text}” in its name.`,
     fresh: 'A new site is made through the API for now: post its sheet to',
     description: 'description of the API',
@@ -65,6 +66,8 @@ export const words = {
     last: (when: string) => `Last reading ${when}`,
     lastNone: 'No reading of this device in this period',
     zone: (zone: string) => `All times are local times of the site (${zone}).`,
+    now: 'What lasts now',
+    nowMore: (n: number) => `and ${n} more`,
     missing: 'What is missing',
     whole: 'Nothing that the program asks for is missing.',
     rated: (ma: number, type: string, delay: string) =>

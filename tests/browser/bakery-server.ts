@@ -7,7 +7,9 @@ import { bakeryWeek } from '../../core/simulate/bakery.ts'
 import type { Simulated } from '../../core/simulate/simulated.ts'
 import { openAnalysis } from '../../server/analysis/analysis.ts'
 import { createApp } from '../../server/app.ts'
+import { LiveHub } from '../../server/plugins/live.ts'
 import { ensureOwnerKey } from '../../server/plugins/owner-key.ts'
+import type { MatterChange } from '../../server/store/alert-port.ts'
 import { openStore } from '../../server/store/sqlite/index.ts'
 
 const OWNER = 'owner-key-of-the-browser-tests-0123456789'
@@ -23,6 +25,8 @@ export interface BakeryServer {
   readonly week: Simulated
   /** Calls the API with a key (the owner's unless told otherwise) and gives the JSON of the answer. */
   call<T>(method: string, path: string, body?: unknown): Promise<T>
+  /** Opens and closes matters of the site, as whoever watches it does. */
+  notice(change: MatterChange): Promise<void>
   makeKey(role: 'viewer' | 'occupant' | 'logger'): Promise<string>
   stop(): Promise<void>
 }
@@ -35,7 +39,8 @@ export async function startBakery(thin = 10): Promise<BakeryServer> {
   const now = Date.now
   await ensureOwnerKey(store, OWNER, now())
   const analysis = openAnalysis({ store, file, now })
-  const app = await createApp({ store, analysis, now, page: PAGE })
+  const live = new LiveHub()
+  const app = await createApp({ store, analysis, now, page: PAGE, live })
   await app.listen({ host: '127.0.0.1', port: 0 })
   const url = `http://127.0.0.1:${(app.server.address() as AddressInfo).port}`
   const call = async <T>(method: string, path: string, body?: unknown): Promise<T> => {
@@ -58,6 +63,10 @@ export async function startBakery(thin = 10): Promise<BakeryServer> {
     ownerKey: OWNER,
     week,
     call,
+    notice: async (change) => {
+      await store.alerts.change(site, change)
+      live.tell(site, { kind: 'matters' })
+    },
     makeKey: async (role) =>
       (await call<{ key: string }>('POST', `/sites/${site}/keys`, { role, label: `The ${role}` })).key,
     stop: async () => {

@@ -3,6 +3,8 @@ export type LiveNews =
   | { readonly kind: 'readings'; readonly channel: string; readonly to: number | null }
   | { readonly kind: 'records' }
   | { readonly kind: 'sheet' }
+  /** Something was noticed, or is over. */
+  | { readonly kind: 'matters' }
 
 /**
  * Listens to what arrives at a site until the returned function is called. The browser reconnects by itself; `onState`
@@ -15,6 +17,7 @@ export function listenLive(site: string, onNews: (news: LiveNews) => void, onSta
   source.addEventListener('readings', (event) => onNews(readingsNews(event.data)))
   source.addEventListener('records', () => onNews({ kind: 'records' }))
   source.addEventListener('sheet', () => onNews({ kind: 'sheet' }))
+  source.addEventListener('matters', () => onNews({ kind: 'matters' }))
   return () => source.close()
 }
 

@@ -17,6 +17,7 @@ import { Answer } from './answer.tsx'
 import { leakageChannelOf } from './missing.ts'
 import { NextSteps } from './next-steps.tsx'
 import { Notes } from './notes.tsx'
+import { OpenMatters } from './open-matters.tsx'
 import { Patterns } from './patterns.tsx'
 import { TripsTable } from './trips-table.tsx'
 import { useLive } from './use-live.ts'
@@ -60,6 +61,7 @@ export function Sheet({ site, rcd, from, to, onSheetChange }: SheetProps): JSX.E
         clock={clock}
         period={from !== null || to !== null}
       />
+      <OpenMatters site={site.id} version={live.matters} />
       <Answer findings={value} busy={findings.busy} error={findings.error} again={again} />
       {value !== null && (
         <>

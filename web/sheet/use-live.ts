@@ -8,6 +8,7 @@ export interface Live {
   readonly readings: number
   readonly findings: number
   readonly records: number
+  readonly matters: number
   /** Time of the latest reading that came of the shown leakage channel, epoch ms; null before any. */
   readonly latest: number | null
 }
@@ -28,7 +29,7 @@ const RECORDS_AFTER = 1_000
 
 /** Follows the live stream of a site. */
 export function useLive(input: LiveInput): Live {
-  const [live, setLive] = useState<Live>({ up: true, readings: 0, findings: 0, records: 0, latest: null })
+  const [live, setLive] = useState<Live>({ up: true, readings: 0, findings: 0, records: 0, matters: 0, latest: null })
   const now = useRef(input)
   now.current = input
   const { site } = input
@@ -45,6 +46,7 @@ export function useLive(input: LiveInput): Live {
       (news) => {
         if (news.kind === 'sheet') now.current.onSheet()
         else if (news.kind === 'records') records.ask()
+        else if (news.kind === 'matters') setLive((old) => ({ ...old, matters: old.matters + 1 }))
         else if (news.channel === '' || now.current.shows(news.channel)) {
           if (news.channel === now.current.channel) latest = Math.max(latest ?? 0, news.to ?? 0) || null
           readings.ask()

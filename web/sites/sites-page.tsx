@@ -62,6 +62,11 @@ export function SitesPage({ who }: { who: Whoami }): JSX.Element {
               {site.lastReadingAt === null
                 ? words.sites.never
                 : words.sites.last(whenOf(site.lastReadingAt, site.timeZone))}
+              {(site.openMatters ?? 0) > 0 && (
+                <>
+                  , <strong>{words.sites.open(site.openMatters ?? 0)}</strong>
+                </>
+              )}
             </span>
           </li>
         ))}
