@@ -20,10 +20,14 @@ interface Kept {
   readonly revision: number
   readonly askedElapsed: number
   readonly facts: DeviceFacts | undefined
+  /** Something that matters to them was written down since. */
+  readonly outdated: boolean
 }
 
 /** Findings are asked for no more often than this for one device: with every post they would be new. */
 const FRESH_MS = 3_600_000
+/** Nor than this, whatever was written down: whoever may write trips down must not keep the analysis busy. */
+const LEAST_MS = 60_000
 
 const Needed = Findings.pick({ headroom: true, proof: true, trips: true })
 
@@ -46,7 +50,8 @@ export class FactsOfDevices {
   of(site: SiteRecord, rcd: string): DeviceFacts | undefined {
     const key = `${site.id}/${rcd}`
     const kept = this.#kept.get(key)
-    const old = kept === undefined || this.#elapsed() - kept.askedElapsed >= FRESH_MS
+    const age = kept === undefined ? Number.POSITIVE_INFINITY : this.#elapsed() - kept.askedElapsed
+    const old = age >= (kept?.outdated === true ? LEAST_MS : FRESH_MS)
     if (old && kept?.revision !== site.revision) {
       this.#wanted.set(key, { site, rcd })
       this.#running ??= this.#run().finally(() => {
@@ -59,7 +64,7 @@ export class FactsOfDevices {
   /** Asks again at the next look, as after a ramp test or a remedy was written down. */
   expire(site: string): void {
     for (const [key, kept] of this.#kept) {
-      if (key.startsWith(`${site}/`)) this.#kept.set(key, { ...kept, askedElapsed: Number.NEGATIVE_INFINITY })
+      if (key.startsWith(`${site}/`)) this.#kept.set(key, { ...kept, outdated: true })
     }
   }
 
@@ -74,8 +79,12 @@ export class FactsOfDevices {
       if (next === undefined) return
       const [key, { site, rcd }] = next
       this.#wanted.delete(key)
-      const facts = (await this.#facts(site, rcd)) ?? this.#kept.get(key)?.facts
-      this.#kept.set(key, { revision: site.revision, askedElapsed: this.#elapsed(), facts })
+      const before = this.#kept.get(key)?.facts
+      // What is written down while the answer is on its way makes it outdated, too.
+      const asked = { revision: site.revision, askedElapsed: this.#elapsed(), facts: before, outdated: false }
+      this.#kept.set(key, asked)
+      const facts = (await this.#facts(site, rcd)) ?? before
+      this.#kept.set(key, { ...asked, facts, outdated: this.#kept.get(key)?.outdated === true })
     }
   }
 
