@@ -44,6 +44,13 @@ export function openMqtt(options: MqttOptions): MqttIntake {
     lastWarning = text
   }
 
+  const warnedOf = new Set<string>()
+  const warnOfSite = (site: string): void => {
+    if (!warnedOf.has(site))
+      warn(`MQTT: LEAKTIDE_MQTT_SITES names a site "${site}" that does not exist; its messages are dropped.`)
+    warnedOf.add(site)
+  }
+
   const client: MqttClient = connect(settings.url, clientOptions(settings, firstWaitMs))
   client.handleMessage = (packet, done) => {
     const payload = typeof packet.payload === 'string' ? Buffer.from(packet.payload) : packet.payload
@@ -67,7 +74,11 @@ export function openMqtt(options: MqttOptions): MqttIntake {
     subscribed = false
     client.options.reconnectPeriod = backOff(failures++, firstWaitMs, mostWaitMs, Math.random)
   })
-  client.on('error', (error) => warnOnce(`MQTT: ${error.message}`))
+  client.on('error', (error) => {
+    // Several addresses that failed make an error without a text of its own.
+    const code = 'code' in error ? String(error.code) : error.name
+    warnOnce(`MQTT: ${error.message || code}`)
+  })
 
   async function handle(message: Parameters<typeof takeMessage>[2]): Promise<boolean> {
     const right = rights.rightOf(message.topic)
@@ -75,7 +86,8 @@ export function openMqtt(options: MqttOptions): MqttIntake {
     if (right === undefined) return true
     for (let attempt = 0; !stopping.signal.aborted; attempt++) {
       try {
-        await takeMessage(inlet, right, message)
+        const became = await takeMessage(inlet, right, message)
+        if (became === 'nowhere' && right.named) warnOfSite(right.site)
         return true
       } catch (error) {
         if (error instanceof StoreError && error.code === 'no_such_site') return true

@@ -6,6 +6,8 @@ export type MqttKind = (typeof MQTT_KINDS)[number]
 export interface TopicRight {
   readonly site: string
   readonly kind: MqttKind
+  /** The settings name this site; else its topic alone does, by "*". */
+  readonly named: boolean
 }
 
 /** Which topics are listened to, and which site each may touch. Nothing is allowed that is not named. */
@@ -43,7 +45,7 @@ export function readTopicRights(text: string, prefix: string): TopicRights | { r
     for (const kind of kinds) {
       const topic = `${prefix}/${name}/${kind}`
       if (exact.has(topic)) return { why: `"${name}" stands there twice` }
-      exact.set(topic, { site, kind })
+      exact.set(topic, { site, kind, named: true })
     }
   }
   if (exact.size === 0 && anySite.size === 0) return { why: 'no site is named' }
@@ -67,5 +69,5 @@ function rightByOwnId(topic: string, prefix: string, kinds: ReadonlySet<MqttKind
   if (!topic.startsWith(`${prefix}/`)) return undefined
   const [site = '', kind = '', ...more] = topic.slice(prefix.length + 1).split('/')
   if (more.length > 0 || !NAME.test(site) || !kinds.has(kind as MqttKind)) return undefined
-  return { site, kind: kind as MqttKind }
+  return { site, kind: kind as MqttKind, named: false }
 }

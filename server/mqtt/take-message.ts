@@ -37,12 +37,16 @@ const SAMPLE_CHARACTERS = 200
 
 /**
  * Puts one message where its topic may put it. Resolves when it is durable, or its refusal is: either way it need not
- * come again. A message of a site that does not exist is dropped.
+ * come again. A message of a site that does not exist goes `nowhere`.
  * @throws {StoreError} when nothing could be kept: the message has to come again
  */
-export async function takeMessage(inlet: Inlet, right: TopicRight, message: Message): Promise<'taken' | 'refused'> {
+export async function takeMessage(
+  inlet: Inlet,
+  right: TopicRight,
+  message: Message,
+): Promise<'taken' | 'refused' | 'nowhere'> {
   const site = await inlet.store.site(right.site)
-  if (site === undefined) return 'refused'
+  if (site === undefined) return 'nowhere'
   try {
     const left = await (right.kind === 'readings'
       ? takeReadings(inlet, site, message)

@@ -206,6 +206,17 @@ describe('messages of a broker', () => {
     expect(intake.topicsOf(other)).toEqual([`house/log/${other}/readings`])
   })
 
+  it('for a site that the settings name and that does not exist are dropped with one warning', async () => {
+    const intake = listen({ sites: 'bakery=nothing, *' })
+    await until(() => intake.connected(), 'connected')
+    const publish = await gateway()
+    await publish('leaktide/bakery/readings', columns([T0, 1]))
+    await publish('leaktide/bakery/readings', columns([T0, 1]))
+    await publish('leaktide/nowhere/readings', columns([T0, 1]))
+    await until(() => broker.acknowledged() >= 3, 'acknowledged')
+    expect(warnings).toEqual([expect.stringContaining('"nothing" that does not exist')])
+  })
+
   it('are acknowledged only when they are durable, and wait while the disk is full', async () => {
     let full = true
     const store = new Proxy(h.store, {
@@ -366,9 +377,9 @@ describe('the settings of a broker', () => {
   it('allow a topic what it was given and nothing else', () => {
     const rights = readTopicRights('a=s1:readings+trips, s2, *:states', 'p')
     if ('why' in rights) throw new Error(rights.why)
-    expect(rights.rightOf('p/a/readings')).toEqual({ site: 's1', kind: 'readings' })
-    expect(rights.rightOf('p/s2/trips')).toEqual({ site: 's2', kind: 'trips' })
-    expect(rights.rightOf('p/s3/states')).toEqual({ site: 's3', kind: 'states' })
+    expect(rights.rightOf('p/a/readings')).toEqual({ site: 's1', kind: 'readings', named: true })
+    expect(rights.rightOf('p/s2/trips')).toEqual({ site: 's2', kind: 'trips', named: true })
+    expect(rights.rightOf('p/s3/states')).toEqual({ site: 's3', kind: 'states', named: false })
     for (const topic of ['p/s3/readings', 'p/a/readings/', 'p/+/states', 'p/#', 'q/a/readings', '', 'p/s3/x/states']) {
       expect([topic, rights.rightOf(topic)]).toEqual([topic, undefined])
     }
