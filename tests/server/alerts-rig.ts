@@ -7,6 +7,7 @@ import type { AlertServerSettings, SmtpSettings } from '../../server/alerts/sett
 import { TooBusy } from '../../server/analysis/limits.ts'
 import { LiveHub } from '../../server/plugins/live.ts'
 import { type Harness, NOW_MS, startHarness } from './harness.ts'
+import { TLS_CERT, TLS_KEY } from './tls-for-tests.ts'
 
 export const SECRET = 'a-secret-of-the-alert-tests'
 
@@ -138,11 +139,13 @@ export interface Relay {
   close(): Promise<void>
 }
 
-export async function startRelay(password?: string): Promise<Relay> {
+/** @param tls TLS from the first byte, with the certificate of the tests */
+export async function startRelay(password?: string, tls = false): Promise<Relay> {
   const mails: Mailed[] = []
   const relay: Pick<Relay, 'refuse'> = { refuse: undefined }
   const server = new SMTPServer({
     logger: false,
+    ...(tls ? { secure: true, key: TLS_KEY, cert: TLS_CERT } : {}),
     authOptional: password === undefined,
     allowInsecureAuth: true,
     disabledCommands: password === undefined ? ['STARTTLS', 'AUTH'] : ['STARTTLS'],
@@ -173,13 +176,13 @@ export async function startRelay(password?: string): Promise<Relay> {
   return Object.assign(relay, {
     mails,
     smtp: {
-      host: '127.0.0.1',
+      host: tls ? 'localhost' : '127.0.0.1',
       port,
-      secure: false,
+      secure: tls,
       requireTls: false,
       user: password === undefined ? undefined : 'leaktide',
       password,
-      ca: undefined,
+      ca: tls ? TLS_CERT : undefined,
       from: 'alerts@leaktide.example',
     },
     close: () => new Promise<void>((done) => server.close(done)),

@@ -7,7 +7,7 @@ import { Arrivals } from '../../server/alerts/arrivals.ts'
 import { sendMail } from '../../server/alerts/mail.ts'
 import { isQuiet } from '../../server/alerts/quiet.ts'
 import { readAlertSettings } from '../../server/alerts/settings.ts'
-import { callWebhook, whyNotCallable } from '../../server/alerts/webhook.ts'
+import { callWebhook, signature, whyNotCallable } from '../../server/alerts/webhook.ts'
 import {
   NOW_MS,
   type Receiver,
@@ -133,6 +133,12 @@ describe('a webhook', () => {
     server.close()
   })
 
+  it('is signed as openssl signs', () => {
+    // printf '%s.%s' 1790000000 '{"kind":"trip"}' | openssl dgst -sha256 -hmac a-secret-of-the-alert-tests (OpenSSL 3.0.19)
+    const digest = '8c23339eb9c3d83e0e561f7534df5b77661efc641782b0e796936999df965db5'
+    expect(signature(SECRET, '1790000000', '{"kind":"trip"}')).toBe(digest)
+  })
+
   it('has an address of http or https without a user', () => {
     for (const url of ['ftp://h/', 'file:///etc/passwd', 'http://u:p@h/', 'nonsense', '']) {
       expect(whyNotCallable(url, allowed)).toBeDefined()
@@ -183,6 +189,14 @@ describe('mail', () => {
     const wrong = sendMail(mail, { ...relay.smtp, password: 'the-wrong-password' })
     await expect(wrong).rejects.toThrow(/^mail relay: /)
     await expect(wrong).rejects.not.toThrow(/wrong-password/)
+  })
+
+  it('goes over TLS, to a relay whose certificate is trusted and to no other', async () => {
+    relay = await startRelay('the-right-password', true)
+    await sendMail(mail, relay.smtp)
+    expect(relay.mails).toHaveLength(1)
+    await expect(sendMail(mail, { ...relay.smtp, ca: undefined })).rejects.toThrow(/certificate/)
+    expect(relay.mails).toHaveLength(1)
   })
 
   it('is not sent without TLS where that is required', async () => {

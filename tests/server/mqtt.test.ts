@@ -1,7 +1,3 @@
-import { execFileSync } from 'node:child_process'
-import { mkdtempSync, readFileSync, rmSync } from 'node:fs'
-import { tmpdir } from 'node:os'
-import { join } from 'node:path'
 import { encode } from 'cborg'
 import { afterEach, beforeEach, describe, expect, it } from 'vitest'
 import { type MqttIntake, openMqtt } from '../../server/mqtt/mqtt-intake.ts'
@@ -11,6 +7,7 @@ import { LiveHub } from '../../server/plugins/live.ts'
 import { type Store, StoreError } from '../../server/store/port.ts'
 import { type Harness, startHarness } from './harness.ts'
 import { type Broker, connectGateway, publishSurely, startBroker, until } from './mqtt-broker.ts'
+import { TLS_CERT, TLS_KEY } from './tls-for-tests.ts'
 
 const T0 = Date.UTC(2026, 8, 21)
 const NONE = {
@@ -315,40 +312,15 @@ describe('messages of a broker', () => {
   })
 
   it('come over TLS with user and password, and the password is in no warning', async () => {
-    const folder = mkdtempSync(join(tmpdir(), 'leaktide-tls-'))
-    const [keyFile, certFile] = [join(folder, 'key.pem'), join(folder, 'cert.pem')]
-    execFileSync(
-      'openssl',
-      [
-        'req',
-        '-x509',
-        '-newkey',
-        'rsa:2048',
-        '-nodes',
-        '-days',
-        '2',
-        '-subj',
-        '/CN=localhost',
-        '-addext',
-        'subjectAltName=DNS:localhost',
-        '-keyout',
-        keyFile,
-        '-out',
-        certFile,
-      ],
-      { stdio: 'ignore' },
-    )
-    const [key, cert] = [readFileSync(keyFile, 'utf8'), readFileSync(certFile, 'utf8')]
-    rmSync(folder, { recursive: true })
     const secure = await startBroker({
-      tls: { key, cert },
+      tls: { key: TLS_KEY, cert: TLS_CERT },
       authenticate: (user, password) => user === 'leaktide' && password === 'right-password',
     })
     closers.push(() => secure.close())
     const url = `mqtts://localhost:${secure.port}`
-    const wrong = listen({ url, ca: cert, user: 'leaktide', password: 'wrong-password', clientId: 'a' })
+    const wrong = listen({ url, ca: TLS_CERT, user: 'leaktide', password: 'wrong-password', clientId: 'a' })
     const untrusting = listen({ url, user: 'leaktide', password: 'right-password', clientId: 'b' })
-    const right = listen({ url, ca: cert, user: 'leaktide', password: 'right-password', clientId: 'c' })
+    const right = listen({ url, ca: TLS_CERT, user: 'leaktide', password: 'right-password', clientId: 'c' })
     await until(() => right.connected(), 'connected')
     await until(() => warnings.length >= 2, 'two warnings')
     expect([wrong.connected(), untrusting.connected()]).toEqual([false, false])
