@@ -134,6 +134,8 @@ export interface Mailed {
 export interface Relay {
   readonly smtp: SmtpSettings
   readonly mails: Mailed[]
+  /** Connections that broke. */
+  readonly faults: readonly Error[]
   /** When set, mail is refused with this. */
   refuse: { readonly code: number; readonly text: string } | undefined
   close(): Promise<void>
@@ -170,11 +172,14 @@ export async function startRelay(password?: string, tls = false): Promise<Relay>
       })
     },
   })
+  const faults: Error[] = []
+  server.on('error', (error) => faults.push(error))
   const listening = server.listen(0, '127.0.0.1')
   await once(listening, 'listening')
   const { port } = listening.address() as AddressInfo
   return Object.assign(relay, {
     mails,
+    faults,
     smtp: {
       host: tls ? 'localhost' : '127.0.0.1',
       port,
