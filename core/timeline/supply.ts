@@ -162,7 +162,16 @@ function switchingThatExplains(
   const things = new Set(
     rcd.circuits.flatMap((c) => [`circuit:${c.ref}`, ...c.loads.map((load) => `load:${load.ref}`)]),
   )
-  const byHand = switchings.filter((s) => !s.on && things.has(s.of)).map((s) => s.at)
+  // the same state written down again is no switching
+  const last = new Map<string, boolean>()
+  const byHand = [...switchings]
+    .sort((a, b) => a.at - b.at)
+    .filter(({ of, on }) => {
+      const changed = last.get(of) !== on
+      last.set(of, on)
+      return changed && !on && things.has(of)
+    })
+    .map(({ at }) => at)
   const slack = Math.max(LOGGER_SLACK, 2 * (interval || 0))
   const candidates = runs.filter((run) => run.lastLive !== null && stays(run))
   if (candidates.length === 0) return () => false

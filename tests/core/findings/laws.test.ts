@@ -104,7 +104,8 @@ describe('findings', () => {
         const switchings = [...evidence.switchings, ...again].sort((a, b) => a.at - b.at)
         expect(bytes(findings({ ...evidence, switchings }))).toBe(bytes(found))
       }),
-      FEW,
+      // the last moment of a circuit's rest may lie at a fall of the level, which it must not explain
+      { ...FEW, examples: [[1, [0.01, 0.99]]] },
     )
   })
 
