@@ -22,7 +22,7 @@ import { tripFindings } from './trips.ts'
 import { countOf, sentence } from './words.ts'
 
 /** Raised whenever the same evidence may give other findings than before; part of every cache key. */
-export const FINDINGS_VERSION = 4
+export const FINDINGS_VERSION = 5
 
 /**
  * The findings of one device over [from, to): the only door into this folder. Same evidence, same bytes.

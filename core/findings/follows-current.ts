@@ -28,7 +28,7 @@ const LEAST_REACH = 0.5
 const HIGHEST = 0.999
 
 /** Correlations from which on the leakage follows the current, and below which it does not; between them nobody can tell. */
-const FOLLOWS = 0.8
+const FOLLOWS = 0.88
 const DOES_NOT = 0.74
 
 /**
